@@ -1,0 +1,1 @@
+"""Light time between the Earth and the Moon. (The public names are gathered here.)"""

@@ -1,0 +1,1 @@
+"""The station: Earth rotation, displacements, and where it is in space."""

@@ -1,0 +1,1 @@
+"""Where the bodies of the solar system are."""

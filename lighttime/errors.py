@@ -1,0 +1,105 @@
+"""What can go wrong, as one small family of exceptions.
+
+Every error that `lighttime` raises on purpose is a `LighttimeError`. Those that come from a
+value handed in are also a `ValueError`, so that code which knows nothing of this library can
+still catch them.
+"""
+
+from __future__ import annotations
+
+import difflib
+from collections.abc import Iterable
+from typing import Any
+
+__all__ = [
+    "ConvergenceError",
+    "CoverageError",
+    "FileError",
+    "HorizonError",
+    "InputError",
+    "LighttimeError",
+    "UnknownNameError",
+]
+
+
+class LighttimeError(Exception):
+    """The root of all errors raised on purpose by this library."""
+
+
+class InputError(LighttimeError, ValueError):
+    """A value that cannot be used.
+
+    Parameters
+    ----------
+    name : str
+        The input, as the caller knows it (``"pressure_hpa"``).
+    value : object
+        What was given.
+    allowed : str
+        What would have been accepted, in words or as a range with its unit.
+
+    Examples
+    --------
+    >>> raise InputError("pressure_hpa", 72439.0, "300 to 1100 hPa")
+    Traceback (most recent call last):
+        ...
+    lighttime.errors.InputError: pressure_hpa is 72439.0; allowed: 300 to 1100 hPa
+    """
+
+    def __init__(self, name: str, value: Any, allowed: str) -> None:
+        self.name = name
+        self.value = value
+        self.allowed = allowed
+        super().__init__(f"{name} is {value!r}; allowed: {allowed}")
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return type(self), (self.name, self.value, self.allowed)
+
+
+class CoverageError(InputError):
+    """An instant that the data in use do not reach."""
+
+
+class HorizonError(InputError):
+    """A ray that arrives at or below the horizon, where no troposphere model holds."""
+
+
+class UnknownNameError(InputError, LookupError):
+    """A name that is not in the list it was looked up in; near names are suggested."""
+
+    def __init__(self, name: str, value: str, known: Iterable[str]) -> None:
+        self.known = tuple(known)
+        near = difflib.get_close_matches(str(value), self.known, n=3, cutoff=0.5)
+        hint = f"did you mean {' or '.join(near)}? " if near else ""
+        InputError.__init__(self, name, value, f"{hint}one of {', '.join(self.known)}")
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return type(self), (self.name, self.value, self.known)
+
+
+class FileError(LighttimeError, ValueError):
+    """A file that cannot be read as what it should be.
+
+    Parameters
+    ----------
+    path : object
+        The file.
+    line : int or None
+        The line at which reading stopped, counted from 1; None for the file as a whole.
+    reason : str
+        What was found and what was expected.
+    """
+
+    def __init__(self, path: Any, line: int | None, reason: str) -> None:
+        self.path = path
+        self.line = line
+        self.reason = reason
+        where = f"{path}" if line is None else f"{path}, line {line}"
+        super().__init__(f"{where}: {reason}")
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return type(self), (self.path, self.line, self.reason)
+
+
+class ConvergenceError(LighttimeError, ArithmeticError):
+    """The light-time equation was not solved to the required accuracy."""

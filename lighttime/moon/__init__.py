@@ -1,0 +1,1 @@
+"""The reflector: libration, lunar tide, and where it is in space."""

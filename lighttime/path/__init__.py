@@ -1,0 +1,1 @@
+"""What happens to the light on its way: pure functions of arrays."""

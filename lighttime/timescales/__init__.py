@@ -1,0 +1,1 @@
+"""Instants and the time scales they are told in."""

@@ -1,0 +1,112 @@
+"""The delay of light in the gravity of Sun, Earth, Moon and planets.
+
+A body at rest delays light between two points by Shapiro's logarithm. A body in motion is at
+rest in its own frame: the two events are carried there by a Lorentz transformation, the
+logarithm is taken there, and since the interval between the events is the same in both frames,
+the delay is carried back by the ratio of the two distances. No expansion in velocity is made.
+
+Source: Shapiro 1964; Moyer 2000, 8.3.1; the moving body as in Kopeikin & Schaefer 1999 and
+Klioner 2003 (uniform motion over the flight of the light).
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from lighttime.constants import SPEED_OF_LIGHT
+from lighttime.path.vectors import dot, norm
+
+Array = NDArray[np.float64]
+
+c = SPEED_OF_LIGHT
+
+
+def shapiro(
+    gm: float, r1: ArrayLike, r2: ArrayLike, r12: ArrayLike, gamma: float = 1.0, bending: bool = False
+) -> Array:
+    """Delay by a body at rest: (1+gamma) GM/c^3 ln[(r1 + r2 + r12)/(r1 + r2 - r12)].
+
+    Parameters
+    ----------
+    gm : float
+        GM of the body, m^3/s^2.
+    r1, r2 : array, shape (...)
+        Distances of the two events from the body, m.
+    r12 : array, shape (...)
+        Distance between the two events, m.
+    gamma : float
+        Parameter gamma of the post-Newtonian formalism; 1 in general relativity.
+    bending : bool
+        Add (1+gamma) GM/c^2 in numerator and denominator, for the bending of the ray
+        (Moyer 2000, eq. 8-54).
+
+    Returns
+    -------
+    ndarray, shape (...)
+        Delay in seconds.
+    """
+    m = (1.0 + gamma) * gm / c**2
+    denominator = np.asarray(r1) + r2 - r12
+    if bending:
+        denominator = denominator + m
+    # the ratio is 1 + 2 r12/(r1 + r2 - r12); log1p keeps the digits where that is close to 1
+    return m / c * np.log1p(2.0 * np.asarray(r12) / denominator)
+
+
+def in_rest_frame(x: Array, t: ArrayLike, velocity: Array) -> Array:
+    """Where an event is in the frame of a body that moves with `velocity`.
+
+    Parameters
+    ----------
+    x : array, shape (3, ...)
+        Event minus position of the body at ``t = 0``, m.
+    t : array, shape (...)
+        Time of the event, s.
+    velocity : array, shape (3, ...)
+        Velocity of the body, m/s.
+
+    Returns
+    -------
+    ndarray, shape (3, ...)
+        The event in the body's rest frame (Lorentz transformation without rotation), m.
+    """
+    beta = velocity / c
+    lorentz = 1.0 / np.sqrt(1.0 - dot(beta, beta))
+    along = lorentz / (1.0 + lorentz) * dot(beta, x) - c * np.asarray(t)
+    return x + lorentz * along * beta
+
+
+def moving_body(
+    gm: float,
+    x1: Array,
+    t1: ArrayLike,
+    x2: Array,
+    t2: ArrayLike,
+    velocity: Array,
+    gamma: float = 1.0,
+    bending: bool = False,
+) -> Array:
+    """Delay between two events by a body in uniform motion.
+
+    Parameters
+    ----------
+    gm : float
+        GM of the body, m^3/s^2.
+    x1, x2 : array, shape (3, ...)
+        The events, relative to the position of the body at ``t = 0``, m.
+    t1, t2 : array, shape (...)
+        Times of the events, s.
+    velocity : array, shape (3, ...)
+        Velocity of the body, m/s.
+    gamma, bending
+        As in `shapiro`.
+
+    Returns
+    -------
+    ndarray, shape (...)
+        Delay in seconds of BCRS time.
+    """
+    at1, at2 = in_rest_frame(x1, t1, velocity), in_rest_frame(x2, t2, velocity)
+    r12 = norm(at2 - at1)
+    return shapiro(gm, norm(at1), norm(at2), r12, gamma, bending) * (r12 / norm(x2 - x1))

@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from lighttime.constants import SPEED_OF_LIGHT
-from lighttime.path.vectors import dot, norm
+from lighttime.vectors import dot, norm
 
 Array = NDArray[np.float64]
 

@@ -1,0 +1,139 @@
+"""How long each day of UTC is, and how far TAI is ahead when it begins.
+
+From 1972 on UTC keeps a whole number of seconds from TAI, changed by leap seconds; from 1960 to
+1971 it ran at a rate of its own and was stepped by fractions of a second. Both are one rule: at
+0h of every UTC day TAI - UTC is a whole multiple of 100 ns, A; TAI runs uniformly over the day,
+which lasts 86400 s + A(next day) - A(this day). All is done in whole numbers of 100 ns, exactly.
+
+Beyond its last entry the leap-second table is continued without a leap second: no one knows of
+one today, and when one is announced a newer table brings it. That the table has passed its
+date of expiry is no error. UTC is taken from 1960-01-01 up to 2100-01-01.
+
+Source: USNO/IERS, table tai-utc; IERS Bulletin C (through ``erfa.leap_seconds``).
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from datetime import date
+from fractions import Fraction
+from functools import cache
+from typing import Final
+
+import erfa
+import numpy as np
+from numpy.typing import NDArray
+
+from lighttime.constants import DAY, MJD_ZERO
+from lighttime.data import table
+from lighttime.errors import CoverageError
+from lighttime.timescales.twopart import Array
+
+Whole = NDArray[np.int64]
+
+TICK: Final = 10_000_000
+"""Units of 100 ns in a second."""
+
+DAY_TICKS: Final = int(DAY) * TICK
+"""Units of 100 ns in 86400 s."""
+
+MJD_OF_ORDINAL: Final = 678576
+"""Python's proleptic Gregorian ordinal of a day minus its modified Julian date."""
+
+FIRST_MJD: Final = date(1960, 1, 1).toordinal() - MJD_OF_ORDINAL
+END_MJD: Final = date(2100, 1, 1).toordinal() - MJD_OF_ORDINAL
+"""UTC days from the first to before the end."""
+
+
+@dataclass(frozen=True)
+class UtcTable:
+    """TAI - UTC = offset + (MJD - reference) * drift from each `mjd` on, all in 100 ns, days."""
+
+    mjd: Whole
+    offset: Whole
+    reference: Whole
+    drift: Whole
+
+    def row(self, mjd: Whole) -> Whole:
+        """The row in force on each day."""
+        found: Whole = np.searchsorted(self.mjd, mjd, side="right") - 1
+        return found
+
+    def at(self, mjd: Whole) -> Whole:
+        """TAI - UTC at 0h UTC of each day, 100 ns."""
+        row = self.row(mjd)
+        ticks: Whole = self.offset[row] + (mjd - self.reference[row]) * self.drift[row]
+        return ticks
+
+
+@cache
+def utc_table() -> UtcTable:
+    """The table, read once in a process: what UTC means does not change under a running user."""
+    early = table("utc_1960_1971")
+    late = erfa.leap_seconds.get()
+    late = late[late["year"] >= 1972]
+
+    def joined(before: NDArray[np.float64], after: NDArray[np.float64], unit: float) -> Whole:
+        whole: Whole = np.rint(np.concatenate([before, after]) * unit).astype(np.int64)
+        whole.flags.writeable = False
+        return whole
+
+    none = np.zeros(len(late))
+    year = np.concatenate([early["year"], late["year"]]).astype(int)
+    month = np.concatenate([early["month"], late["month"]]).astype(int)
+    days = [
+        date(y, m, 1).toordinal() - MJD_OF_ORDINAL
+        for y, m in zip(year.tolist(), month.tolist(), strict=True)
+    ]
+    mjd = np.array(days, dtype=np.int64)
+    mjd.flags.writeable = False
+    return UtcTable(
+        mjd,
+        joined(early["tai_minus_utc_s"], late["tai_utc"], TICK),
+        joined(early["reference_mjd"], none, 1.0),
+        joined(early["drift_s_per_day"], none, TICK),
+    )
+
+
+def utc_days(day: Array) -> Whole:
+    """Modified Julian dates of days of UTC, given by the Julian dates (x.5) of their 0h.
+
+    Raises
+    ------
+    CoverageError
+        When one is before 1960-01-01 or not before 2100-01-01.
+    """
+    mjd = np.asarray(day - MJD_ZERO)
+    outside = ~((mjd >= FIRST_MJD) & (mjd < END_MJD))
+    if np.any(outside):
+        worst = float(mjd[outside].flat[0])
+        raise CoverageError("UTC date", day_text(worst), "1960-01-01 to 2099-12-31")
+    return mjd.astype(np.int64)
+
+
+def day_text(mjd: float) -> str:
+    """The calendar date of a day, for people."""
+    try:
+        return date.fromordinal(int(mjd) + MJD_OF_ORDINAL).isoformat()
+    except (ValueError, OverflowError):
+        return f"MJD {mjd}"
+
+
+def day_growth(mjd: Whole) -> Whole:
+    """TAI seconds in each day of UTC beyond 86400, in 100 ns."""
+    known = utc_table()
+    growth: Whole = known.at(mjd + 1) - known.at(mjd)
+    return growth
+
+
+@cache
+def utc_day_seconds(mjd: int) -> Fraction:
+    """UTC seconds in a day: 86400, or 86401 when it ends in a leap second; exact.
+
+    On days that end in one of the small steps of 1961-1971 the last minute is longer or shorter
+    by the step (in UTC seconds, which then were longer than a second of TAI by the drift).
+    """
+    known = utc_table()
+    day = np.array(mjd)
+    drift = int(known.drift[known.row(day)])
+    return Fraction(DAY_TICKS + int(day_growth(day)), DAY_TICKS + drift) * int(DAY)

@@ -9,12 +9,13 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import ArrayLike
 
-from lighttime.constants import DAY
 from lighttime.errors import InputError
 from lighttime.timescales import twopart
+from lighttime.timescales.inputs import Place, Rotation
 from lighttime.timescales.leapseconds import utc_days
-from lighttime.timescales.scales import UNIFORM, Place, Rotation, convert, known_scale
+from lighttime.timescales.scales import UNIFORM, convert, known_scale
 from lighttime.timescales.text import format_iso
+from lighttime.timescales.uniform import DAY_PAIR
 
 if TYPE_CHECKING:
     from astropy.time import Time
@@ -177,7 +178,7 @@ class Epoch:
             return self.to("tai").shift(seconds, rest_s).to(self.scale)
         try:
             step = twopart.pair(seconds, rest_s)
-            days = twopart.divide(step, twopart.exact(DAY))
+            days = twopart.divide(step, DAY_PAIR)
             date = twopart.add(twopart.pair(self.jd1, self.jd2), days)
         except (TypeError, ValueError):
             given = f"shape {np.shape(seconds)} for epochs of shape {self.shape}"
@@ -218,16 +219,17 @@ class Epoch:
             raise InputError(
                 "shape of other", other.shape, f"one that broadcasts with {self.shape}"
             ) from None
-        return twopart.plain(twopart.multiply(days, twopart.exact(DAY)))[0]
+        return twopart.plain(twopart.multiply(days, DAY_PAIR))[0]
 
     def day_and_fraction(self) -> tuple[Any, Any]:
-        """The Julian date (x.5) of 0h of the day, and the fraction of the day, in [0, 1].
+        """The Julian date (x.5) of 0h of the day, and the fraction of the day, in [0, 1).
 
-        The fraction is rounded to one float64: the last 5e-17 of a day read 1.0.
+        The fraction is rounded to one float64, a grid of at most 1e-16; where that gives 1,
+        it is 0 of the next day.
         """
-        date = twopart.pair(self.jd1, self.jd2)
-        day, fraction = twopart.day_and_fraction(date)
-        return twopart.plain((day, fraction[0]))
+        day, fraction = twopart.day_and_fraction(twopart.pair(self.jd1, self.jd2))
+        full = fraction[0] >= 1.0
+        return twopart.plain((day + full, fraction[0] - full))
 
     def isoformat(self, digits: int = 12) -> Any:
         """Calendar text ``YYYY-MM-DDThh:mm:ss.fraction``, rounded to `digits` decimals.

@@ -15,6 +15,7 @@ from lighttime.timescales.epoch import Epoch
 from lighttime.timescales.leapseconds import DAY_TICKS, day_growth, utc_days, utc_table
 from lighttime.timescales.scales import known_scale
 from lighttime.timescales.text import parse_iso
+from lighttime.timescales.uniform import DAY_PAIR
 
 Read: TypeAlias = tuple[Any, Any, str]
 
@@ -42,7 +43,7 @@ def read(value: Any, scale: str, name: str = "epoch") -> Read:
         What errors call it.
     """
     if isinstance(value, str):
-        return *parse_iso(value, scale, name), scale
+        return *parse_iso(str(value), scale, name), scale
     if isinstance(value, Epoch):
         return value.jd1, value.jd2, value.scale
     if isinstance(value, datetime):
@@ -94,14 +95,14 @@ def _from_datetime64(values: Any, scale: str, name: str) -> tuple[Any, Any]:
 
 def _day_seconds(day: Any, scale: str) -> twopart.Pair:
     if scale != "utc":
-        return twopart.exact(DAY)
+        return DAY_PAIR
     mjd = utc_days(day)
     known = utc_table()
     drift = known.drift[known.row(mjd)]
     ratio = twopart.divide(
         twopart.pair(DAY_TICKS + day_growth(mjd)), twopart.pair(DAY_TICKS + drift)
     )
-    return twopart.multiply(twopart.exact(DAY), ratio)
+    return twopart.multiply(DAY_PAIR, ratio)
 
 
 def _is_astropy(value: Any) -> bool:

@@ -1,4 +1,4 @@
-"""TDB - TT: the relativistic rate of a clock on the Earth, by the series for the Earth's orbit."""
+"""TDB and TT: a clock on the Earth, its rate changed by orbit, potential and daily motion."""
 
 from __future__ import annotations
 
@@ -9,6 +9,10 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from lighttime.errors import InputError
+from lighttime.timescales.inputs import Place, Rotation, TwoPart, date_pair
+from lighttime.timescales.twopart import Array, Pair, add, divide, pair, plain, subtract
+from lighttime.timescales.uniform import DAY_PAIR
+from lighttime.timescales.ut1 import ut1_day_fraction
 
 KILOMETRE = 1.0e3
 
@@ -34,8 +38,8 @@ def tdb_minus_tt(
     Returns
     -------
     float or array
-        Seconds. The series holds its 787 terms to some nanoseconds against a numerical
-        integration; its differences over seconds are good to 1e-16 s.
+        Seconds. Against a numerical integration the series is off by some nanoseconds, nearly
+        constant in a day; its differences over seconds are good to 1e-16 s.
 
     Notes
     -----
@@ -57,3 +61,69 @@ def tdb_minus_tt(
         longitude, u_km, v_km = np.arctan2(y, x), np.hypot(x, y) / KILOMETRE, z / KILOMETRE
     seconds = erfa.dtdb(tdb1, tdb2, ut1_fraction, longitude, u_km, v_km)
     return float(seconds) if np.ndim(seconds) == 0 else seconds
+
+
+def _days(seconds: Any) -> Pair:
+    return divide(pair(seconds), DAY_PAIR)
+
+
+def _xyz_m(place: Place | None) -> Array | None:
+    if place is None:
+        return None
+    if not hasattr(place, "xyz_m"):
+        raise InputError("place", place, "an object with xyz_m, its ITRF position in metres")
+    return np.asarray(place.xyz_m, dtype=np.float64)
+
+
+def tt_to_tdb(
+    tt1: ArrayLike,
+    tt2: ArrayLike,
+    place: Place | None = None,
+    earth_orientation: Rotation | None = None,
+) -> TwoPart:
+    """TDB from TT of a clock at a place on the Earth (at the geocentre when none is given).
+
+    Parameters
+    ----------
+    tt1, tt2 : float or array
+        Julian date, TT, in two parts.
+    place : object with ``xyz_m``, optional
+        Where the clock is. Without one the daily term of up to 2 microseconds is left out.
+    earth_orientation : object with ``at``, optional
+        Gives UT1, needed with a place; the bundled series when not given.
+
+    Notes
+    -----
+    Source: `tdb_minus_tt`. Its slope is below 6e-10 and its size below 2 ms, so that the second
+    of two steps towards its argument, TDB, leaves 1e-21 s.
+    """
+    tt = date_pair("tt", tt1, tt2)
+    xyz_m = _xyz_m(place)
+    ut1 = 0.0 if xyz_m is None else ut1_day_fraction(tt, earth_orientation)
+    tdb = tt
+    for _ in range(2):
+        tdb = add(tt, _days(tdb_minus_tt(*tdb, ut1, xyz_m)))
+    return plain(tdb)
+
+
+def tdb_to_tt(
+    tdb1: ArrayLike,
+    tdb2: ArrayLike,
+    place: Place | None = None,
+    earth_orientation: Rotation | None = None,
+) -> TwoPart:
+    """TT of a clock at a place on the Earth (at the geocentre when none is given) from TDB.
+
+    The inverse of `tt_to_tdb`, with the same arguments. The argument of the series is at hand;
+    with a place, UT1 is found from TT, to which TDB itself is the first approximation: its
+    2 milliseconds move the daily term by 3e-13 s, those by nothing.
+    """
+    tdb = date_pair("tdb", tdb1, tdb2)
+    xyz_m = _xyz_m(place)
+    if xyz_m is None:
+        return plain(subtract(tdb, _days(tdb_minus_tt(*tdb))))
+    tt = tdb
+    for _ in range(2):
+        ut1 = ut1_day_fraction(tt, earth_orientation)
+        tt = subtract(tdb, _days(tdb_minus_tt(*tdb, ut1, xyz_m)))
+    return plain(tt)

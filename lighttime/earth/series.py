@@ -203,7 +203,7 @@ class EarthOrientation:
         Examples
         --------
         >>> series = EarthOrientation.fixed(0.3341)
-        >>> round(series.at(2453751.5, 0.9).ut1_tai_s, 4)  # TAI - UTC was 33 s in 2006
+        >>> round(float(series.at(2453751.5, 0.9).ut1_tai_s), 4)  # TAI - UTC: 33 s in 2006
         -32.6659
         """
         values = []
@@ -284,9 +284,9 @@ class EarthOrientation:
 
         Examples
         --------
-        >>> pole = EarthOrientation.bundled().at(2451544.5, 32.0 / 86400.0)
-        >>> round(float(pole.ut1_tai_s), 7)  # published: UT1-UTC = 0.3554880 s
-        -31.644512
+        >>> pole = EarthOrientation.bundled().at(2437665.5, 1.845858 / 86400.0)  # 1962-01-01
+        >>> round(float(pole.ut1_tai_s), 7)  # UT1-UTC 0.0326338 s, TAI-UTC 1.845858 s
+        -1.8132242
         """
         if self.constant is not None:
             return self._constant_at(tai1, tai2)
@@ -382,7 +382,7 @@ class EarthOrientation:
             tt2 = self.tai2[some] + TT_MINUS_TAI / DAY
             values[some] = self.ut1_tai_s[some] - zonal_ut1(self.tai1[some], tt2)
             done[block] = True
-        found: Floats = values[node]
+        found: Floats = np.take(values, node)
         return found
 
     def _constant_at(self, tai1: ArrayLike, tai2: ArrayLike) -> PoleAndUT1:

@@ -1,1 +1,67 @@
-"""Light time between the Earth and the Moon. (The public names are gathered here.)"""
+"""Light time between the Earth and the Moon, to a known accuracy, taken apart term by term.
+
+>>> import lighttime as lt
+>>> hilltop = lt.Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
+>>> answer = lt.round_trip("2020-03-01T19:00:00", hilltop, lt.reflector("Apollo 15"))
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from lighttime.answer import OneWay, RoundTrip
+from lighttime.earth.series import EarthOrientation
+from lighttime.earth.station import Station
+from lighttime.ephemeris import Ephemeris
+from lighttime.errors import (
+    ConvergenceError,
+    CoverageError,
+    FileError,
+    HorizonError,
+    InputError,
+    LighttimeError,
+    UnknownNameError,
+)
+from lighttime.model import Model
+from lighttime.moon.reflector import Reflector, reflector, reflectors
+from lighttime.path.ends import Trajectory
+from lighttime.path.troposphere import Weather
+from lighttime.terms import TERMS
+from lighttime.timescales import Epoch
+from lighttime.version import __version__
+
+__all__ = [
+    "TERMS",
+    "ConvergenceError",
+    "CoverageError",
+    "EarthOrientation",
+    "Ephemeris",
+    "Epoch",
+    "FileError",
+    "HorizonError",
+    "InputError",
+    "LighttimeError",
+    "Model",
+    "OneWay",
+    "Reflector",
+    "RoundTrip",
+    "Station",
+    "Trajectory",
+    "UnknownNameError",
+    "Weather",
+    "__version__",
+    "one_way",
+    "reflector",
+    "reflectors",
+    "round_trip",
+]
+
+
+def round_trip(when: Any, station: Any, reflector: Any, **more: Any) -> RoundTrip:
+    """The round trip by the default model: see `Model.round_trip`."""
+    return Model().round_trip(when, station, reflector, **more)
+
+
+def one_way(when: Any, start: Any, end: Any, **more: Any) -> OneWay:
+    """The one-way light time by the default model: see `Model.one_way`."""
+    return Model().one_way(when, start, end, **more)

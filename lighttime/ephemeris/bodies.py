@@ -68,7 +68,7 @@ class Ephemeris:
 
     @staticmethod
     def default() -> Ephemeris:
-        """DE421, as carried by the package `de421`: 1900 to 2050, libration included.
+        """DE421, as carried by the package `de421`: 1900 to 2199, libration included.
 
         Source: Folkner, Williams & Boggs 2009, IPN Progress Report 42-178.
         """

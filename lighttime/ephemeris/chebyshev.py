@@ -20,6 +20,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import pairwise
+from math import fsum
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -220,7 +222,7 @@ def _groups(index: Index) -> Iterator[tuple[Index | int, Index | slice]]:
         yield index, slice(None)
         return
     edges = [0, *cuts.tolist(), index.size]
-    for first, last in zip(edges[:-1], edges[1:], strict=True):
+    for first, last in pairwise(edges):
         yield int(index[first]), slice(first, last)
 
 
@@ -268,7 +270,5 @@ def _differences(x: Array, dx: Array, terms: int) -> Array:
 
 def _exact_sum(a: Array) -> Array:
     """Sum over the last axis with one rounding (for the few epochs on a seam)."""
-    from math import fsum
-
     flat = a.reshape(-1, a.shape[-1])
     return np.array([fsum(row) for row in flat]).reshape(a.shape[:-1])

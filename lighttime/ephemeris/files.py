@@ -172,6 +172,4 @@ def _reduced(angles: Records) -> Records:
     error = (upper * turns - high) + (TWO_PI[0] - upper) * turns
     coefficients[:, :, 0] = ((first - high) - error) - TWO_PI[1] * turns
     coefficients.flags.writeable = False
-    return Records(
-        angles.start_jd, angles.span_days, coefficients, angles.scale, angles.name
-    )
+    return Records(angles.start_jd, angles.span_days, coefficients, angles.scale, angles.name)

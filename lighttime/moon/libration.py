@@ -56,9 +56,7 @@ def angular_velocity(angles: Array, rates: Array) -> Array:
     dphi, dtheta, dpsi = rates
     cf, sf = np.cos(phi), np.sin(phi)
     ct, st = np.cos(theta), np.sin(theta)
-    return np.array(
-        [dtheta * cf + dpsi * sf * st, dtheta * sf - dpsi * cf * st, dphi + dpsi * ct]
-    )
+    return np.array([dtheta * cf + dpsi * sf * st, dtheta * sf - dpsi * cf * st, dphi + dpsi * ct])
 
 
 def velocity(omega: Array, r: Array) -> Array:

@@ -23,7 +23,12 @@ c = SPEED_OF_LIGHT
 
 
 def shapiro(
-    gm: float, r1: ArrayLike, r2: ArrayLike, r12: ArrayLike, gamma: float = 1.0, bending: bool = False
+    gm: float,
+    r1: Array,
+    r2: Array,
+    r12: Array,
+    gamma: float = 1.0,
+    bending: bool = False,
 ) -> Array:
     """Delay by a body at rest: (1+gamma) GM/c^3 ln[(r1 + r2 + r12)/(r1 + r2 - r12)].
 
@@ -47,11 +52,12 @@ def shapiro(
         Delay in seconds.
     """
     m = (1.0 + gamma) * gm / c**2
-    denominator = np.asarray(r1) + r2 - r12
+    denominator = r1 + r2 - r12
     if bending:
         denominator = denominator + m
     # the ratio is 1 + 2 r12/(r1 + r2 - r12); log1p keeps the digits where that is close to 1
-    return m / c * np.log1p(2.0 * np.asarray(r12) / denominator)
+    delay: Array = m / c * np.log1p(2.0 * r12 / denominator)
+    return delay
 
 
 def in_rest_frame(x: Array, t: ArrayLike, velocity: Array) -> Array:

@@ -11,7 +11,7 @@ to some nanoseconds is evaluated once.
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from typing import Any, Protocol, TypeVar
 
@@ -60,8 +60,8 @@ class Solved:
         Unit vector from the known to the found event.
     distance : ndarray, shape (n,)
         m.
-    delay : ndarray, shape (n,)
-        What delays the light beyond distance over c, s.
+    delays : mapping of str to ndarray, shape (n,)
+        What delays the light beyond distance over c, by name, s.
     iterations : int
         Evaluations of the unknown end.
     last_step_s : float
@@ -72,14 +72,14 @@ class Solved:
     found: Any
     direction: Array
     distance: Array
-    delay: Array
+    delays: Mapping[str, Array]
     iterations: int
     last_step_s: float
 
     @property
     def seconds(self) -> Array:
         """Duration of the leg, TDB seconds."""
-        return self.distance / SPEED_OF_LIGHT + self.delay
+        return self.distance / SPEED_OF_LIGHT + sum(self.delays.values())
 
 
 def solve_leg(
@@ -87,7 +87,7 @@ def solve_leg(
     end: Callable[[Array], E],
     sense: int,
     guess_s: ArrayLike,
-    delay: Callable[[Any, E], Array] | None = None,
+    delays: Callable[[Any, E], Mapping[str, Array]] | None = None,
 ) -> Solved:
     """Find the event on the other end that the light joins to a known one.
 
@@ -101,8 +101,8 @@ def solve_leg(
         +1 if the unknown event is the later one.
     guess_s : float or array
         A first guess of the light time, s.
-    delay : callable, optional
-        From (known, unknown) event to the delay beyond geometry, s.
+    delays : callable, optional
+        From (known, unknown) event to the delays beyond geometry, by name, s.
 
     Raises
     ------
@@ -114,8 +114,9 @@ def solve_leg(
         event = end(seconds)
         separation = event.position - known.position
         distance = norm(separation)
-        late = np.zeros_like(distance) if delay is None else delay(known, event)
-        miss = sense * (seconds - known.seconds) - distance / SPEED_OF_LIGHT - late
+        late = {} if delays is None else delays(known, event)
+        travel = distance / SPEED_OF_LIGHT + sum(late.values())
+        miss = sense * (seconds - known.seconds) - travel
         slope = sense - dot(separation, event.velocity) / distance / SPEED_OF_LIGHT
         step = -miss / slope
         largest = float(np.max(np.abs(step), initial=0.0))

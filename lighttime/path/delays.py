@@ -1,0 +1,112 @@
+"""What delays the light beyond geometry, between an event near the Earth and one far away."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+
+from lighttime.constants import SPEED_OF_LIGHT
+from lighttime.ephemeris.bodies import PLANETS
+from lighttime.ephemeris.frame import EarthFrame
+from lighttime.path.gravity import moving_body
+from lighttime.vectors import Array, dot, norm
+
+c = SPEED_OF_LIGHT
+
+GRAVITY_TERMS = {
+    "sun": "sun_gravity",
+    "earth": "earth_gravity",
+    "moon": "moon_gravity",
+} | dict.fromkeys(PLANETS, "planet_gravity")
+"""The term under which the delay by each body is counted."""
+
+
+def gravity_delays(
+    frame: EarthFrame,
+    near: Any,
+    far: Any,
+    gamma: float,
+    omit: frozenset[str],
+    solar_bending: bool = False,
+) -> dict[str, Array]:
+    """Delay by each body between two events, seconds.
+
+    Parameters
+    ----------
+    frame : EarthFrame
+    near, far : Event
+        The event at the station (or what stands for it) and the one at the reflector. Bodies
+        are taken where they are at the near event, and in uniform motion around it.
+    gamma : float
+        Parameter gamma of the post-Newtonian formalism.
+    omit : frozenset of str
+        Terms to leave out.
+    solar_bending : bool
+        Moyer's (1+gamma) GM/c^2 in the Sun's logarithm.
+
+    Returns
+    -------
+    dict of str to ndarray, shape (n,)
+    """
+    later = far.seconds - near.seconds
+    delays: dict[str, Array] = {}
+    for body in ("sun", "earth", "moon", *PLANETS):
+        if GRAVITY_TERMS[body] in omit:
+            continue
+        if body not in ("earth", "moon") and body not in frame.distant_bodies:
+            continue
+        position, velocity = _body_at(frame, body, near)
+        delays[body] = moving_body(
+            frame.ephemeris.gm(body),
+            near.position - position,
+            0.0,
+            far.position - position,
+            later,
+            velocity,
+            gamma,
+            bending=solar_bending and body == "sun",
+        )
+    return delays
+
+
+def _body_at(frame: EarthFrame, body: str, near: Any) -> tuple[Array, Array]:
+    if body not in ("earth", "moon"):
+        return frame.distant(body, near.seconds)
+    known = hasattr(near, "earth")
+    earth, velocity = (near.earth, near.earth_velocity) if known else frame.earth(near.seconds)
+    if body == "earth":
+        return earth, velocity
+    moon, moon_velocity = frame.moon_geocentric(near.seconds)
+    return earth + moon, velocity + moon_velocity
+
+
+def sine_of_elevation(near: Any, far: Any, upward: bool) -> Array:
+    """Sine of the elevation of the ray in the rest frame of the station.
+
+    The photon's direction is carried into that frame by the Lorentz transformation; for light
+    that comes down, elevation is where it comes from.
+
+    Parameters
+    ----------
+    near : StationEvent
+    far : Event
+    upward : bool
+        True for the uplink.
+    """
+    sense = 1.0 if upward else -1.0
+    ray = sense * (far.position - near.position)
+    ray = ray / norm(ray)
+    beta = near.velocity / c
+    lorentz = 1.0 / np.sqrt(1.0 - dot(beta, beta))
+    seen = ray + lorentz * (lorentz / (1.0 + lorentz) * dot(beta, ray) - 1.0) * beta
+    sine: Array = sense * dot(seen, near.up) / norm(seen)
+    return sine
+
+
+def elevation(near: Any, far: Any, upward: bool) -> Array | None:
+    """Elevation of the ray at the station, rad; None where no station is at the near end."""
+    if not hasattr(near, "up"):
+        return None
+    angle: Array = np.arcsin(sine_of_elevation(near, far, upward))
+    return angle

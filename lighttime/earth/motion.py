@@ -18,6 +18,7 @@ from lighttime.earth import rotation
 from lighttime.earth.displacement import displacements
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
+from lighttime.earth.subdaily import subdaily
 from lighttime.ephemeris.frame import EarthFrame
 from lighttime.timescales.scales import tt_to_tai
 from lighttime.timescales.tdb import tdb_minus_tt
@@ -110,9 +111,7 @@ class StationMotion:
         if "subdaily_rotation" in self.omit:
             dx = dy = dut1 = np.zeros_like(seconds)
         else:
-            from lighttime.earth import subdaily
-
-            dx, dy, dut1 = subdaily.subdaily(tt1, tt2)
+            dx, dy, dut1 = subdaily(tai1, tai2 + pole.ut1_tai_s / DAY, tt1, tt2)
         ut1_2 = tai2 + (pole.ut1_tai_s + dut1) / DAY
         xp, yp = pole.xp_rad + dx, pole.yp_rad + dy
         x, y, s = rotation.celestial_pole(tt1, tt2)

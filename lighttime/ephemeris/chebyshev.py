@@ -91,7 +91,8 @@ class Records:
         """
         jd1, jd2, seconds = (np.asarray(a, dtype=float) for a in (jd1, jd2, seconds))
         whole = np.floor(jd1 - self.start_jd)
-        rest = ((jd1 - self.start_jd) - whole) + jd2 + seconds / DAY
+        with np.errstate(invalid="ignore"):  # what is not finite is refused below
+            rest = ((jd1 - self.start_jd) - whole) + jd2 + seconds / DAY
         carry = np.floor(rest)  # whole days apart from the fraction, to the end
         whole, rest = whole + carry, rest - carry
         count = len(self.coefficients)
@@ -271,4 +272,5 @@ def _differences(x: Array, dx: Array, terms: int) -> Array:
 def _exact_sum(a: Array) -> Array:
     """Sum over the last axis with one rounding (for the few epochs on a seam)."""
     flat = a.reshape(-1, a.shape[-1])
-    return np.array([fsum(row) for row in flat]).reshape(a.shape[:-1])
+    sums: Array = np.array([fsum(row) for row in flat]).reshape(a.shape[:-1])
+    return sums

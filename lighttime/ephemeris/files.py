@@ -95,16 +95,16 @@ def open_files(
         return _records(segment, KILOMETRE, f"{bsp} {center}->{target}", bsp)
 
     earth, moon = records(_EMB, _EARTH), records(_EMB, _MOON)
+    barycentric = {"earth_moon_barycentre": records(0, _EMB), "sun": records(0, _SUN)}
+    barycentric |= {p: records(0, n) for p, n in _PLANET_NUMBER.items() if (0, n) in segments}
     known = dict(Ephemeris.default().constants)
     stated = {} if constants is None else dict(constants)
     orientation = None if orientation is None else fspath(orientation)
+    kernel.daf.file.close()  # what was found stays mapped
     name = bsp.replace("\\", "/").rsplit("/", 1)[-1].rsplit(".", 1)[0]
     return Ephemeris(
         name=name,
-        barycentric=MappingProxyType(
-            {"earth_moon_barycentre": records(0, _EMB), "sun": records(0, _SUN)}
-            | {p: records(0, n) for p, n in _PLANET_NUMBER.items() if (0, n) in segments}
-        ),
+        barycentric=MappingProxyType(barycentric),
         moon_from_earth=_minus(moon, earth, bsp),
         earth_from_barycentre=earth,
         angles=None if orientation is None else _orientation(orientation),
@@ -116,20 +116,33 @@ def open_files(
 
 
 def _opened(kind: Any, path: str) -> Any:
+    from jplephem.daf import DAF
+
     try:
-        return kind.open(path)
-    except FileNotFoundError:
-        raise FileError(path, None, "no such file") from None
-    except (ValueError, OSError) as error:
+        file = open(path, "rb")
+    except OSError as error:
+        raise FileError(path, None, f"cannot be read: {error.strerror}") from None
+    try:
+        return kind(DAF(file))
+    except Exception as error:  # whatever a broken file makes the reader do
+        file.close()
         raise FileError(path, None, f"not an ephemeris file: {error}") from None
 
 
 def _records(segment: Any, scale: float, name: str, path: str) -> Records:
+    """The Chebyshev records of a segment, still on disk.
+
+    Each record is its middle, half its length, and the coefficients of each component; behind
+    the last are the beginning, the length of a record, its size and their number.
+    """
     if segment.data_type not in (2, 3):
         raise FileError(path, None, f"segment {name} is not made of Chebyshev records (2 or 3)")
-    first_s, span_s, coefficients = segment.load_array()
-    rows = np.moveaxis(np.asarray(coefficients)[:3], 0, 1)  # (records, components, terms)
-    return Records(J2000 + first_s / DAY, span_s / DAY, rows, scale, name)
+    components = 3 if segment.data_type == 2 else 6  # type 3 carries velocities as well
+    daf = segment.daf
+    first_s, span_s, size, count = daf.read_array(segment.end_i - 3, segment.end_i)
+    rows = daf.map_array(segment.start_i, segment.end_i - 4).reshape(int(count), int(size))
+    coefficients = rows[:, 2:].reshape(int(count), components, -1)[:, :3]
+    return Records(J2000 + first_s / DAY, span_s / DAY, coefficients, scale, name)
 
 
 def _minus(a: Records, b: Records, path: str) -> Records:
@@ -150,11 +163,9 @@ def _orientation(path: str) -> Records:
     kernel = _opened(PCK, path)
     if not kernel.segments:
         raise FileError(path, None, "no orientation segment in it")
-    segment = kernel.segments[0]
-    first_s, span_s, coefficients = segment.load_array()
-    rows = np.moveaxis(np.asarray(coefficients)[:3], 0, 1)
-    start = J2000 + first_s / DAY
-    return _reduced(Records(start, span_s / DAY, rows, 1.0, f"{path} lunar orientation"))
+    angles = _reduced(_records(kernel.segments[0], 1.0, f"{path} lunar orientation", path))
+    kernel.daf.file.close()
+    return angles
 
 
 def _reduced(angles: Records) -> Records:

@@ -159,7 +159,12 @@ class Epoch:
         date = convert(self.jd1, self.jd2, self.scale, target, place, earth_orientation)
         return Epoch(*date, target)
 
-    def shift(self, seconds: ArrayLike, rest_s: ArrayLike = 0.0) -> Epoch:
+    def shift(
+        self,
+        seconds: ArrayLike,
+        rest_s: ArrayLike = 0.0,
+        earth_orientation: Rotation | None = None,
+    ) -> Epoch:
         """The instants after some elapsed seconds, in the same scale.
 
         Parameters
@@ -168,6 +173,8 @@ class Epoch:
             Elapsed seconds, of the scale when it is uniform, of TAI when it is UTC or UT1.
         rest_s : float or array, optional
             What `seconds` lost in rounding to a float64, added without loss.
+        earth_orientation : EarthOrientation, optional
+            For epochs in UT1 only, to reach TAI; the bundled series when not given.
 
         Examples
         --------
@@ -175,28 +182,32 @@ class Epoch:
         '2016-12-31T23:59:60.25'
         """
         if self.scale not in UNIFORM:
-            return self.to("tai").shift(seconds, rest_s).to(self.scale)
+            in_tai = self.to("tai", earth_orientation=earth_orientation)
+            moved = in_tai.shift(seconds, rest_s)
+            return moved.to(self.scale, earth_orientation=earth_orientation)
+        if not (np.all(np.isfinite(seconds)) and np.all(np.isfinite(rest_s))):
+            raise InputError("seconds", seconds, "finite numbers")
         try:
-            step = twopart.pair(seconds, rest_s)
-            days = twopart.divide(step, DAY_PAIR)
+            days = twopart.divide(twopart.pair(seconds, rest_s), DAY_PAIR)
             date = twopart.add(twopart.pair(self.jd1, self.jd2), days)
-        except (TypeError, ValueError):
+        except ValueError:
             given = f"shape {np.shape(seconds)} for epochs of shape {self.shape}"
             raise InputError("seconds", given, "numbers of a shape that broadcasts") from None
-        if not np.all(np.isfinite(step[0])):
-            raise InputError("seconds", seconds, "finite numbers")
         return Epoch(*date, self.scale)
 
-    def seconds_since(self, other: Epoch) -> Any:
+    def seconds_since(self, other: Epoch, earth_orientation: Rotation | None = None) -> Any:
         """Elapsed seconds from `other` to these instants.
 
         Counted in the scale of this epoch when it is uniform, else (UTC, UT1) in TAI; leap
-        seconds count as any second.
+        seconds count as any second. Between TT and TDB clocks are taken at the geocentre: use
+        `to` with a place first where 2 microseconds matter.
 
         Parameters
         ----------
         other : Epoch
             Of any scale and a shape that broadcasts.
+        earth_orientation : EarthOrientation, optional
+            For epochs in UT1 only, to reach TAI; the bundled series when not given.
 
         Returns
         -------
@@ -212,13 +223,13 @@ class Epoch:
         if not isinstance(other, Epoch):
             raise InputError("other", other, "an Epoch")
         common = self.scale if self.scale in UNIFORM else "tai"
-        a, b = self.to(common), other.to(common)
+        a = self.to(common, earth_orientation=earth_orientation)
+        b = other.to(common, earth_orientation=earth_orientation)
         try:
             days = twopart.subtract(twopart.pair(a.jd1, a.jd2), twopart.pair(b.jd1, b.jd2))
         except ValueError:
-            raise InputError(
-                "shape of other", other.shape, f"one that broadcasts with {self.shape}"
-            ) from None
+            allowed = f"one that broadcasts with {self.shape}"
+            raise InputError("shape of other", other.shape, allowed) from None
         return twopart.plain(twopart.multiply(days, DAY_PAIR))[0]
 
     def day_and_fraction(self) -> tuple[Any, Any]:

@@ -31,11 +31,10 @@ class Rotation(Protocol):
 
 def date_pair(name: str, jd1: ArrayLike, jd2: ArrayLike) -> Pair:
     """A Julian date handed in, as a pair; refused when not finite or of two shapes."""
+    if not (np.all(np.isfinite(jd1)) and np.all(np.isfinite(jd2))):
+        raise InputError(name, (jd1, jd2), "finite Julian dates in two parts")
     try:
-        date = pair(jd1, jd2)
+        return pair(jd1, jd2)
     except ValueError:
         shapes = f"{np.shape(jd1)} and {np.shape(jd2)}"
         raise InputError(f"shapes of {name}", shapes, "two that broadcast to one") from None
-    if not np.all(np.isfinite(date[0])):
-        raise InputError(name, (jd1, jd2), "finite Julian dates in two parts")
-    return date

@@ -33,7 +33,7 @@ def tdb_minus_tt(
         UT1 as a fraction of the day since midnight. Has no effect at the geocentre.
     xyz_m : array of shape (3,) or (3, ...), optional
         ITRF position of the clock, metres; the geocentre when not given, which leaves out up to
-        2 microseconds of daily variation at a place on the surface.
+        2 microseconds of daily variation at a place on the surface, and 0.8 of annual.
 
     Returns
     -------
@@ -51,6 +51,7 @@ def tdb_minus_tt(
     >>> round(tdb_minus_tt(2448939.5, 0.123, 0.76543), 9)
     -0.001279984
     """
+    date_pair("tdb", tdb1, tdb2)
     if xyz_m is None:
         longitude, u_km, v_km = 0.0, 0.0, 0.0
     else:

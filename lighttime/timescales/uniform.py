@@ -40,12 +40,12 @@ def gps_to_tai(gps1: ArrayLike, gps2: ArrayLike) -> TwoPart:
 
 def tai_to_gst(tai1: ArrayLike, tai2: ArrayLike) -> TwoPart:
     """Galileo system time = TAI - 19 s. Source: Galileo OS SIS ICD, 5.1.2."""
-    return tai_to_gps(tai1, tai2)
+    return plain(add(date_pair("tai", tai1, tai2), _SATELLITE_MINUS_TAI_D))
 
 
 def gst_to_tai(gst1: ArrayLike, gst2: ArrayLike) -> TwoPart:
     """TAI = Galileo system time + 19 s. Source: Galileo OS SIS ICD, 5.1.2."""
-    return gps_to_tai(gst1, gst2)
+    return plain(subtract(date_pair("gst", gst1, gst2), _SATELLITE_MINUS_TAI_D))
 
 
 _ORIGIN: Final = add(exact(SCALES_ORIGIN[0]), exact(SCALES_ORIGIN[1]))

@@ -406,7 +406,9 @@ def test_unknown_scales_suggest_the_near_ones() -> None:
         lambda: Epoch.parse("2008-03-30", "tdt"),
         lambda: SHOT.to("tdt"),
     ):
-        with pytest.raises(UnknownNameError, match=r"scale is 'tdt'; allowed: did you mean tt or tdb"):
+        with pytest.raises(
+            UnknownNameError, match=r"scale is 'tdt'; allowed: did you mean tt or tdb"
+        ):
             attempt()
     with pytest.raises(UnknownNameError, match="scale is None"):
         Epoch(DAY, 0.0, None)  # type: ignore[arg-type]
@@ -455,3 +457,12 @@ def test_importing_the_room_does_not_import_astropy() -> None:
         [sys.executable, "-c", program], capture_output=True, text=True, check=True
     )
     assert out.stdout.strip() == "False"
+
+
+def test_pandas_timestamps_to_the_nanosecond() -> None:
+    pandas = pytest.importorskip("pandas")
+    stamp = pandas.Timestamp("2008-03-30T12:39:50.125000001", tz="America/Los_Angeles")
+    assert Epoch.parse(stamp).isoformat(9) == "2008-03-30T19:39:50.125000001"
+    assert Epoch.parse(pandas.Series([stamp, stamp])).shape == (2,)
+    with pytest.raises(InputError, match="NaT; allowed: ISO text"):
+        Epoch.parse(pandas.NaT)

@@ -12,7 +12,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from lighttime.timescales import SCALES, Epoch
+from lighttime.timescales import SCALES, Epoch, twopart
 from lighttime.timescales.leapseconds import FIRST_MJD, utc_day_seconds, utc_table
 
 repeatable = settings(derandomize=True, deadline=None, max_examples=100)
@@ -124,7 +124,12 @@ def test_a_julian_date_in_utc_counts_the_whole_day(day: int, fraction: float) ->
 
 
 @repeatable
-@given(days.filter(lambda day: day > FIRST_MJD + 13), fractions, st.floats(-1e6, 1e6), st.sampled_from(sorted(set(SCALES) - {"ut1"})))
+@given(
+    days.filter(lambda day: day > FIRST_MJD + 13),
+    fractions,
+    st.floats(-1e6, 1e6),
+    st.sampled_from(sorted(set(SCALES) - {"ut1"})),
+)
 def test_a_shift_is_what_seconds_since_says(
     day: int, fraction: float, seconds: float, scale: str
 ) -> None:
@@ -140,3 +145,38 @@ def test_an_array_is_its_elements(instants: list[tuple[int, float]], scale: str)
     together = Epoch(day + 2400000.5, fraction, "utc").to(scale, earth_orientation=Spin())
     apart = [utc(int(d), f).to(scale, earth_orientation=Spin()) for d, f in instants]
     assert list(together) == apart
+
+
+# --- the arithmetic underneath --------------------------------------------------------------
+
+numbers = st.floats(-1e9, 1e9).filter(lambda x: x == 0.0 or abs(x) > 1e-9)
+pairs = st.tuples(numbers, st.floats(-0.5, 0.5)).map(
+    lambda ab: twopart.pair(ab[0], ab[0] * ab[1] * 2.0**-53)
+)
+
+
+def rational(x: twopart.Pair) -> Fraction:
+    return Fraction(float(x[0])) + Fraction(float(x[1]))
+
+
+@repeatable
+@given(pairs, pairs)
+def test_arithmetic_on_pairs_against_rational_numbers(x: twopart.Pair, y: twopart.Pair) -> None:
+    a, b = rational(x), rational(y)
+    assert (
+        abs(rational(twopart.add(x, y)) - (a + b))
+        <= abs(a + b) / 2**104 + min(abs(a), abs(b)) / 2**105
+    )
+    assert abs(rational(twopart.multiply(x, y)) - a * b) <= abs(a * b) / 2**102
+    if b:
+        assert abs(rational(twopart.divide(x, y)) - a / b) <= abs(a / b) / 2**101
+
+
+@repeatable
+@given(days, fractions)
+def test_day_and_fraction_lose_nothing(day: int, fraction: float) -> None:
+    jd = twopart.pair(day + 2400000.5, fraction)
+    start, rest = twopart.day_and_fraction(jd)
+    assert float(start) == day + 2400000.5
+    assert abs(rational(rest) - (rational(jd) - Fraction(float(start)))) <= Fraction(1, 2**106)
+    assert 0 <= rational(rest) < 1

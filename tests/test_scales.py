@@ -142,6 +142,13 @@ def test_drift_within_a_day_of_1969() -> None:
     assert noon.to("tai").isoformat(9) == "1969-07-21T12:00:07.576290000"
 
 
+def test_drift_goes_on_through_the_last_lengthened_minute() -> None:
+    """USNO/IERS tai-utc at 86400.1 s of 1971-12-31: 9.88965 + 0.002592 * 86400.1 / 86400."""
+    late = Epoch.parse("1971-12-31T23:59:60.1")
+    assert scales.tai_minus_utc(late.jd1, late.jd2) == pytest.approx(9.892242003, abs=2e-14)
+    assert late.to("tai").isoformat(12) == "1972-01-01T00:00:09.992242003000"
+
+
 def test_length_of_days() -> None:
     assert utc_day_seconds(57753) == 86401  # 2016-12-31
     assert utc_day_seconds(57754) == 86400

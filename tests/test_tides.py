@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-import erfa
 import numpy as np
 import pytest
+from sun_and_moon import sun_and_moon
 
 from lighttime.earth.local import SphericalFrame, from_geodetic
 from lighttime.earth.tides import (
@@ -71,16 +71,6 @@ def test_love_numbers_enter_as_defined() -> None:
     np.testing.assert_allclose(unit_l, [0.0, 0.0, 0.0], atol=1e-15)
     unit_h3 = tide(h3=1.292) - tide(h3=0.292)
     np.testing.assert_allclose(unit_h3, [moon_lift * RE / 384.4e6, 0.0, 0.0], atol=1e-15)
-
-
-def sun_and_moon(tt: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
-    """Sun and Moon in an Earth-fixed frame good to arcminutes, from ERFA's own series."""
-    zero = np.zeros_like(tt)
-    to_date = erfa.rxr(erfa.rz(erfa.era00(tt, zero), np.eye(3)), erfa.pmat06(tt, zero))
-    au = 149597870700.0
-    sun = -au * erfa.epv00(tt, zero)[0]["p"]
-    moon = au * erfa.moon98(tt, zero)["p"]
-    return erfa.rxp(to_date, sun).T, erfa.rxp(to_date, moon).T
 
 
 def test_mean_over_a_nodal_period_is_the_permanent_tide() -> None:

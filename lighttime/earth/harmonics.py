@@ -10,7 +10,7 @@ from lighttime.data import Table
 
 __all__ = ["doodson_multipliers", "harmonic_sum"]
 
-_BLOCK = 4096  # instants at a time, so that the phases of all terms stay in a few megabytes
+_BLOCK = 512  # instants at a time: the phases of 342 terms then stay in the cache
 
 
 def doodson_multipliers(table: Table) -> NDArray[np.float64]:

@@ -49,15 +49,15 @@ def place(xyz_m: ArrayLike) -> Array:
     Raises
     ------
     InputError
-        If the first axis is not of length 3, or a point is not within 6300 to 6500 km of the
+        If the first axis is not of length 3, or a point is not within 6250 to 6500 km of the
         geocentre (kilometres given for metres, longitude for x, ...).
     """
     xyz = np.asarray(xyz_m, dtype=float)
     if xyz.ndim == 0 or xyz.shape[0] != 3:
         raise InputError("xyz_m", f"an array of shape {xyz.shape}", "shape (3, ...), metres")
     radius = np.sqrt(np.sum(xyz * xyz, axis=0))
-    if not np.all((radius > 6.3e6) & (radius < 6.5e6)):
-        raise InputError("xyz_m", xyz.tolist(), "6300000 to 6500000 m from the geocentre")
+    if not np.all((radius > 6.25e6) & (radius < 6.5e6)):
+        raise InputError("xyz_m", xyz.tolist(), "6250000 to 6500000 m from the geocentre")
     return xyz
 
 

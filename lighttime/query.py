@@ -74,7 +74,7 @@ class Query:
     def blocks(self, size: int) -> Iterator[Query]:
         """The same query in flat parts of at most `size` instants."""
         when = Epoch(np.ravel(self.when.jd1), np.ravel(self.when.jd2), self.when.scale)
-        for first in range(0, self.size, size):
+        for first in range(0, max(self.size, 1), size):  # no epochs at all are a block, too
             part = slice(first, first + size)
             yield replace(self, when=when[part], weather=self._weather(part))
 

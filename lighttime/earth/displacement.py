@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 
 from lighttime.constants import J2000, JULIAN_YEAR
-from lighttime.earth import tides
+from lighttime.earth import loading, tides
 from lighttime.earth.station import Station
 from lighttime.vectors import Array
 
@@ -67,7 +67,19 @@ def displacements(
         moved["solid_earth_tide"] = tides.solid_earth_tide(
             xyz, sun_itrf_m, moon_itrf_m, tt1, tt2, ut1_fraction
         )
+    years = ((tt1 - J2000) + tt2) / JULIAN_YEAR
     if "pole_tide" not in omit:
-        years = ((tt1 - J2000) + tt2) / JULIAN_YEAR
         moved["pole_tide"] = tides.pole_tide(xyz, xp_arcsec, yp_arcsec, years)
+    if station.ocean_loading is not None and "ocean_loading" not in omit:
+        moved["ocean_loading"] = loading.ocean_loading(
+            xyz, station.ocean_loading, tt1, tt2, ut1_fraction
+        )
+    if station.ocean_pole_tide is not None and "ocean_pole_tide" not in omit:
+        moved["ocean_pole_tide"] = loading.ocean_pole_tide_loading(
+            xyz, station.ocean_pole_tide, xp_arcsec, yp_arcsec, years
+        )
+    if station.atmosphere_loading is not None and "atmosphere_loading" not in omit:
+        moved["atmosphere_loading"] = loading.atmosphere_loading(
+            xyz, station.atmosphere_loading, ut1_fraction
+        )
     return moved

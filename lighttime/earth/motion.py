@@ -14,7 +14,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from lighttime.constants import ARCSECOND, DAY, EARTH_ROTATION_RATE, L_C, SPEED_OF_LIGHT
-from lighttime.earth import rotation
+from lighttime.earth import rotation, subdaily
 from lighttime.earth.displacement import displacements
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station

@@ -181,8 +181,8 @@ def angular_velocity(
 
     The intermediate origin is non-rotating: about the pole p = (X, Y, Z) the Earth turns by
     ERA and nothing else, and the pole itself moves by p x dp/dt. The velocity of a point fixed
-    to the Earth is the vector product of the result and r_GCRS. Polar motion, left out, moves
-    a station by up to 2e-6 m/s (its periods of half a day and a day included).
+    to the Earth is the vector product of the result and r_GCRS. What polar motion adds is
+    `polar_motion_velocity`, rotated to the GCRS: up to 2e-6 m/s at the surface.
 
     Parameters
     ----------
@@ -214,6 +214,15 @@ def angular_velocity(
             era_rate * Z + X * Y_rate - Y * X_rate,
         ]
     )
+
+
+def polar_motion_velocity(xp_rate: ArrayLike, yp_rate: ArrayLike) -> Floats:
+    """Angular velocity due to the motion of the pole, rad/s in the ITRF, shape (3, ...).
+
+    To first order in the pole's coordinates: W turns about -y by x_p and about -x by y_p.
+    """
+    xp_rate, yp_rate = np.broadcast_arrays(np.asarray(xp_rate, float), np.asarray(yp_rate, float))
+    return np.stack([-yp_rate, -xp_rate, np.zeros_like(xp_rate)])
 
 
 def rotate(matrix: Floats, vector: ArrayLike) -> Floats:

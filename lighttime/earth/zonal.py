@@ -18,8 +18,8 @@ from lighttime.earth.arguments import centuries, fundamental_arguments
 
 Floats = NDArray[np.float64]
 
-BLOCK: Final = 8192
-"""Instants evaluated together: bounds the memory to a few MB whatever is asked for."""
+BLOCK: Final = 1024
+"""Instants evaluated together: keeps the work in the processor's cache."""
 
 
 @dataclass(frozen=True)
@@ -80,10 +80,11 @@ def zonal_sums(arguments: ArrayLike, rows: slice = slice(None)) -> Floats:
     -------
     ndarray, shape (3, n) or as many rows as asked for
     """
-    sines, cosines = _amplitudes()
     phase = _multipliers() @ np.asarray(arguments, dtype=float)
-    few = cosines.any(axis=0)
-    total: Floats = sines[rows] @ np.sin(phase) + cosines[rows, few] @ np.cos(phase[few])
+    sines, cosines = (amplitude[rows] for amplitude in _amplitudes())
+    with_sine, with_cosine = sines.any(axis=0), cosines.any(axis=0)  # half of them are zero
+    total: Floats = sines[:, with_sine] @ np.sin(phase[with_sine])
+    total += cosines[:, with_cosine] @ np.cos(phase[with_cosine])
     return total
 
 

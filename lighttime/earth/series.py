@@ -356,11 +356,11 @@ class EarthOrientation:
         mjd = days + self.mjd[0]
         if not np.isfinite(mjd):
             raise InputError("tai1 + tai2", mjd, "a finite Julian date")
-        first, last = self.coverage
+        first, last = self._days_of_nodes[[0, -1]] + self.mjd[0]
         raise CoverageError(
             "epoch",
             f"{_calendar(mjd)} (MJD {mjd:.6f} TAI)",
-            f"{_calendar(first)} to {_calendar(last)} 0h UTC (MJD {first:.0f} to {last:.0f}), "
+            f"{_calendar(first)} to {_calendar(last)} (MJD {first:.6f} to {last:.6f} TAI), "
             f"what {self.name} covers",
         )
 

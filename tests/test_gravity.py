@@ -77,3 +77,30 @@ def test_bending_is_a_small_correction() -> None:
     r = np.array(1.5e11), np.array(1.502e11), np.array(3.8e8)
     change = shapiro(GM_SUN, *r, bending=True) - shapiro(GM_SUN, *r)
     assert -1e-15 < change < 0.0
+
+
+def test_oblateness_is_the_integral_of_the_field() -> None:
+    """Against mpmath quadrature of -(1+gamma)/c^3 of the J2 potential along straight rays."""
+    from lighttime.path.gravity import oblateness
+
+    j2_radius2 = 1.0826e-3 * 6378136.6**2
+    axis = np.array([0.6, 0.0, 0.8])
+    for x1, x2 in (
+        (np.array([6.37e6, 0.0, 0.0]), np.array([3.84e8, 0.0, 0.0])),  # to the zenith
+        (np.array([6.37e6, 0.0, 0.0]), np.array([1.0e8, 3.7e8, 5.0e7])),
+        (np.array([3.0e6, 4.0e6, 4.0e6]), np.array([-1.0e7, 3.7e8, -5.0e7])),
+    ):
+        length = float(norm(x2 - x1))
+
+        def field(l: mpmath.mpf, x1=x1, x2=x2, length=length) -> mpmath.mpf:  # noqa: E741
+            x = [a + (b - a) * l / length for a, b in zip(x1.tolist(), x2.tolist(), strict=True)]
+            r = mpmath.sqrt(sum(v * v for v in x))
+            z = sum(v * n for v, n in zip(x, axis.tolist(), strict=True))
+            return (3 * z**2 / r**5 - 1 / r**3) / 2
+
+        ends = [0, length / 100, length / 10, length]
+        integral = mpmath.quad(field, ends)
+        expected = -2 * GM_EARTH * j2_radius2 / c**3 * float(integral)
+        delay = oblateness(GM_EARTH * j2_radius2, x1, x2, axis)
+        assert delay == pytest.approx(expected, rel=1e-9)
+        assert 1e-15 < abs(delay) < 1e-13

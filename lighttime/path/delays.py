@@ -9,8 +9,8 @@ import numpy as np
 from lighttime.constants import SPEED_OF_LIGHT
 from lighttime.ephemeris.bodies import PLANETS
 from lighttime.ephemeris.frame import EarthFrame
-from lighttime.path.gravity import moving_body
-from lighttime.vectors import Array, dot, norm
+from lighttime.path.gravity import in_rest_frame, moving_body, oblateness
+from lighttime.vectors import Array, column, dot, norm
 
 c = SPEED_OF_LIGHT
 
@@ -57,17 +57,27 @@ def gravity_delays(
         if body not in ("earth", "moon") and body not in frame.distant_bodies:
             continue
         position, velocity = _body_at(frame, body, near)
-        delays[body] = moving_body(
-            frame.ephemeris.gm(body),
-            near.position - position,
-            0.0,
-            far.position - position,
-            later,
-            velocity,
-            gamma,
-            bending=solar_bending and body == "sun",
-        )
+        x1, x2 = near.position - position, far.position - position
+        bending = solar_bending and body == "sun"
+        gm = frame.ephemeris.gm(body)
+        delays[body] = moving_body(gm, x1, 0.0, x2, later, velocity, gamma, bending)
+        if body == "earth":
+            far_at_rest = in_rest_frame(x2, later, velocity)
+            delays[body] += oblateness(gm * _j2_radius2(frame), x1, far_at_rest, _axis(near), gamma)
     return delays
+
+
+def _j2_radius2(frame: EarthFrame) -> float:
+    constants = frame.ephemeris.constants
+    return constants["j2_earth"] * constants["radius_earth_m"] ** 2
+
+
+def _axis(near: Any) -> Array:
+    """The Earth's axis; where no station tells it, the pole of the ICRS (within 0.3 degrees)."""
+    if hasattr(near, "axis"):
+        axis: Array = near.axis
+        return axis
+    return column((0.0, 0.0, 1.0), near.seconds)
 
 
 def _body_at(frame: EarthFrame, body: str, near: Any) -> tuple[Array, Array]:

@@ -83,6 +83,51 @@ def in_rest_frame(x: Array, t: ArrayLike, velocity: Array) -> Array:
     return x + lorentz * along * beta
 
 
+def oblateness(
+    gm_j2_radius2: float, x1: Array, x2: Array, axis: Array, gamma: float = 1.0
+) -> Array:
+    """What the flattening of a body at rest adds to its delay.
+
+    The flattened part of the potential is the second derivative of the round part along the
+    body's axis, so that part of the delay is the second derivative of Shapiro's logarithm
+    L(s) = ln[(s + r12)/(s - r12)], s = r1 + r2, when both events are shifted along the axis n:
+
+        delay = -(1+gamma) GM J2 R^2/(2 c^3) [ (r12 s/E^2) s'^2 - (r12/E) s'' ]
+
+        E = r1 r2 + x1.x2,   s' = n.(u1 + u2),   s'' = sum of (1 - (n.u)^2)/r
+
+    Nothing in it is singular for a ray that rises to the zenith.
+
+    Parameters
+    ----------
+    gm_j2_radius2 : float
+        GM J2 R^2 of the body, m^5/s^2.
+    x1, x2 : array, shape (3, ...)
+        The events, from the centre of the body, m.
+    axis : array, shape (3, ...)
+        Unit vector along the body's axis.
+    gamma : float
+        Parameter gamma of the post-Newtonian formalism.
+
+    Returns
+    -------
+    ndarray, shape (...)
+        Delay in seconds: up to 30 fs per leg above the Earth's horizon.
+
+    Notes
+    -----
+    Source: derived here from the definition of J2; the same field is treated in Klioner 1991
+    and Le Poncin-Lafitte & Teyssandier 2008 (from memory).
+    """
+    r1, r2, r12 = norm(x1), norm(x2), norm(x2 - x1)
+    n1, n2 = dot(axis, x1) / r1, dot(axis, x2) / r2
+    e = r1 * r2 + dot(x1, x2)
+    first = n1 + n2
+    second = (1.0 - n1 * n1) / r1 + (1.0 - n2 * n2) / r2
+    bracket = r12 / e * ((r1 + r2) / e * first**2 - second)
+    return -(1.0 + gamma) * gm_j2_radius2 / (2.0 * c**3) * bracket
+
+
 def moving_body(
     gm: float,
     x1: Array,

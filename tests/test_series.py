@@ -14,8 +14,8 @@ import pytest
 from astropy_iers_data import IERS_A_FILE, IERS_B_FILE
 
 from lighttime.constants import ARCSECOND, DAY, MILLIARCSECOND, TT_MINUS_TAI
-from lighttime.earth.series import UNKNOWN_DXDY_SIGMA_MAS, EarthOrientation
-from lighttime.earth.series_files import FINAL, PREDICTED, RAPID
+from lighttime.earth.series import EarthOrientation
+from lighttime.earth.series_files import FINAL, PREDICTED, RAPID, UNKNOWN_DXDY_SIGMA_MAS
 from lighttime.earth.zonal import zonal_ut1
 from lighttime.errors import CoverageError, FileError, InputError
 
@@ -85,7 +85,19 @@ def test_reading_a_file_of_either_kind(tmp_path: Path) -> None:
     finals = EarthOrientation.read(str(path))
     assert finals.name.startswith("finals2000A")
     assert set(np.unique(finals.kind)) == {RAPID, PREDICTED}
+    assert "after that zero" in str(finals)
     assert finals.coverage[1] == float([x for x in FINALS_LINES if x[58:68].strip()][-1][7:15])
+
+
+def test_a_file_of_predictions_alone(tmp_path: Path) -> None:
+    path = tmp_path / "predictions.txt"
+    without = [x for x in FINALS_LINES if x[58:68].strip() and not x[97:106].strip()]
+    path.write_text("\n".join(without), encoding="ascii")
+    series = EarthOrientation.read(path)
+    assert np.all(series.kind == PREDICTED)
+    assert series.last_dxdy_mjd == series.last_measured_mjd == -np.inf
+    assert not series.at(series.tai1[5], 0.5).dx_rad
+    assert "dX, dY    zero" in str(series)
 
 
 def _broken(tmp_path: Path, lines: list[str]) -> str:
@@ -277,7 +289,7 @@ def test_fixed() -> None:
 
 
 def test_fixed_refuses_what_is_no_orientation() -> None:
-    with pytest.raises(InputError, match=r"ut1_utc_s is 33.4; allowed: -1.0 to 1.0"):
+    with pytest.raises(InputError, match=r"ut1_utc_s is 33.4; allowed: -2.0 to 2.0"):
         EarthOrientation.fixed(33.4)
     with pytest.raises(InputError, match="xp_arcsec is nan"):
         EarthOrientation.fixed(0.1, np.nan)

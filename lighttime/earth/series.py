@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import hashlib
 from dataclasses import dataclass, fields
-from datetime import date
 from functools import cache, cached_property
 from os import PathLike, fspath
 from typing import Any, Final
@@ -13,25 +12,17 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from lighttime.constants import ARCSECOND, DAY, MILLIARCSECOND, MJD_ZERO, TT_MINUS_TAI
-from lighttime.earth.series_files import FINAL, PREDICTED, RAPID, Days, read_days
+from lighttime.earth.interpolation import combine, lagrange, lagrange_slope
+from lighttime.earth.series_files import LARGEST, PREDICTED, joined, read_days
+from lighttime.earth.series_text import calendar, described
 from lighttime.earth.zonal import zonal_tides, zonal_ut1
-from lighttime.errors import CoverageError, FileError, InputError
+from lighttime.errors import CoverageError, InputError
 from lighttime.timescales.scales import tai_minus_utc, tai_to_utc
 
 Floats = NDArray[np.float64]
 
-UNKNOWN_DXDY_SIGMA_MAS: Final = 0.3
-"""One sigma of dX and dY taken as zero where no value is published, mas.
-
-The amplitude that the free core nutation, their unpredictable part, typically has (from
-memory)."""
-
 BLOCK: Final = 512
 """Nodes whose zonal tides are computed together, when first asked for."""
-
-KINDS: Final = {FINAL: "final", RAPID: "rapid", PREDICTED: "predicted"}
-
-_MJD_OF_ORDINAL: Final = 678576
 
 
 @dataclass(frozen=True)
@@ -176,7 +167,7 @@ class EarthOrientation:
             With the line where reading stopped.
         """
         days = read_days(path)
-        return _from_days(f"{days.layout.name} ({fspath(path)})", path, [days])
+        return EarthOrientation(name=f"{days.layout.name} ({fspath(path)})", **joined([days], path))
 
     @staticmethod
     def fixed(
@@ -194,7 +185,7 @@ class EarthOrientation:
         Parameters
         ----------
         ut1_utc_s : float
-            UT1 - UTC, s, within 1.
+            UT1 - UTC, s, within 2.
         xp_arcsec, yp_arcsec : float
             Pole, arcseconds, within 2.
         dx_mas, dy_mas : float
@@ -206,25 +197,16 @@ class EarthOrientation:
         >>> round(float(series.at(2453751.5, 0.9).ut1_tai_s), 4)  # TAI - UTC: 33 s in 2006
         -32.6659
         """
-        values = []
-        for name, value, limit in (
-            ("ut1_utc_s", ut1_utc_s, 1.0),
-            ("xp_arcsec", xp_arcsec, 2.0),
-            ("yp_arcsec", yp_arcsec, 2.0),
-            ("dx_mas", dx_mas, 100.0),
-            ("dy_mas", dy_mas, 100.0),
-        ):
-            number = float(value)
-            if not abs(number) <= limit:
+        constant = (ut1_utc_s, xp_arcsec, yp_arcsec, dx_mas, dy_mas)
+        for (name, limit), value in zip(LARGEST.items(), constant, strict=True):
+            if not abs(value) <= limit:
                 raise InputError(name, value, f"-{limit} to {limit}")
-            values.append(number)
-        a, b, c, d, e = values
         nodes: dict[str, Any] = dict.fromkeys(("mjd", *_VALUES, *_SIGMAS), np.empty(0))
         return EarthOrientation(
             name="fixed",
             kind=np.empty(0, dtype=np.int8),
             last_dxdy_mjd=np.inf,
-            constant=(a, b, c, d, e),
+            constant=constant,
             **nodes,
         )
 
@@ -291,14 +273,8 @@ class EarthOrientation:
         if self.constant is not None:
             return self._constant_at(tai1, tai2)
         j, t, _ = self._stencil(tai1, tai2)
-        weights = _lagrange(t)
         tides = zonal_ut1(tai1, np.asarray(tai2) + TT_MINUS_TAI / DAY)
-        ut1 = _combine(weights, self._tide_free, j) + tides
-        pole = [
-            unit * _combine(weights, getattr(self, name).__getitem__, j)
-            for name, unit in zip(_VALUES[1:], _UNITS[1:], strict=True)
-        ]
-        return PoleAndUT1(*(value[()] for value in (ut1, *pole)))
+        return self._combined(lagrange(t), j, tides)
 
     def rates(self, tai1: ArrayLike, tai2: ArrayLike) -> PoleAndUT1:
         """The derivatives of what `at` gives, per second of TAI.
@@ -310,14 +286,8 @@ class EarthOrientation:
             zero = np.zeros(np.broadcast_shapes(np.shape(tai1), np.shape(tai2)))[()]
             return PoleAndUT1(zero, zero, zero, zero, zero)
         j, t, length_s = self._stencil(tai1, tai2)
-        weights = _lagrange_slope(t) / length_s
         tides = -zonal_tides(tai1, np.asarray(tai2) + TT_MINUS_TAI / DAY).lod_s / DAY
-        ut1 = _combine(weights, self._tide_free, j) + tides
-        pole = [
-            unit * _combine(weights, getattr(self, name).__getitem__, j)
-            for name, unit in zip(_VALUES[1:], _UNITS[1:], strict=True)
-        ]
-        return PoleAndUT1(*(value[()] for value in (ut1, *pole)))
+        return self._combined(lagrange_slope(t) / length_s, j, tides)
 
     def sigmas(self, tai1: ArrayLike, tai2: ArrayLike) -> PoleAndUT1:
         """One sigma of each of the values of `at`, linear between the nodes."""
@@ -352,6 +322,15 @@ class EarthOrientation:
         j = np.clip(i - 1, 0, self.mjd.size - 4)
         return j, x + (i - 1 - j), length_s
 
+    def _combined(self, weights: Floats, j: Any, tides: Floats) -> PoleAndUT1:
+        """The weighted sum of nodes j to j+3; UT1 - TAI without tides, and those added."""
+        ut1 = combine(weights, self._tide_free, j) + tides
+        pole = (
+            unit * combine(weights, getattr(self, name).__getitem__, j)
+            for name, unit in zip(_VALUES[1:], _UNITS[1:], strict=True)
+        )
+        return PoleAndUT1(ut1[()], *(value[()] for value in pole))
+
     def _refuse(self, days: float) -> None:
         mjd = days + self.mjd[0]
         if not np.isfinite(mjd):
@@ -359,14 +338,15 @@ class EarthOrientation:
         first, last = self._days_of_nodes[[0, -1]] + self.mjd[0]
         raise CoverageError(
             "epoch",
-            f"{_calendar(mjd)} (MJD {mjd:.6f} TAI)",
-            f"{_calendar(first)} to {_calendar(last)} (MJD {first:.6f} to {last:.6f} TAI), "
+            f"{calendar(mjd)} (MJD {mjd:.6f} TAI)",
+            f"{calendar(first)} to {calendar(last)} (MJD {first:.6f} to {last:.6f} TAI), "
             f"what {self.name} covers",
         )
 
     @cached_property
     def _days_of_nodes(self) -> Floats:
-        return (self.tai1 - self.tai1[0]) + self.tai2
+        days: Floats = (self.tai1 - self.tai1[0]) + self.tai2
+        return days
 
     @cached_property
     def _tide_free_store(self) -> tuple[Floats, NDArray[np.bool_]]:
@@ -382,7 +362,7 @@ class EarthOrientation:
             tt2 = self.tai2[some] + TT_MINUS_TAI / DAY
             values[some] = self.ut1_tai_s[some] - zonal_ut1(self.tai1[some], tt2)
             done[block] = True
-        found: Floats = np.take(values, node)
+        found: Floats = values[node]
         return found
 
     def _constant_at(self, tai1: ArrayLike, tai2: ArrayLike) -> PoleAndUT1:
@@ -423,59 +403,7 @@ class EarthOrientation:
         return f"<EarthOrientation {self.name}: MJD {first:.0f} to {last:.0f}>"
 
     def __str__(self) -> str:
-        lines = [f"Earth orientation: {self.name}"]
-        if self.constant is not None:
-            ut1, xp, yp, dx, dy = self.constant
-            lines += [
-                f"  UT1-UTC {ut1:+.7f} s at every instant, without zonal tides",
-                f'  pole x {xp:+.6f}", y {yp:+.6f}"; dX {dx:+.3f}, dY {dy:+.3f} mas',
-            ]
-            return "\n".join(lines)
-        for code, word in KINDS.items():
-            days = np.flatnonzero(self.kind == code)
-            if days.size:
-                k = days[-1]
-                lines.append(
-                    f"  {word:9} {_calendar(self.mjd[days[0]])} to {_calendar(self.mjd[k])}, at "
-                    f"the end one sigma is {1e6 * self.sigma_ut1_s[k]:.0f} us in UT1, "
-                    f"{1e3 * self.sigma_xp_arcsec[k]:.3f} and "
-                    f"{1e3 * self.sigma_yp_arcsec[k]:.3f} mas in the pole"
-                )
-        lines.append(f"  dX, dY    to {_calendar(self.last_dxdy_mjd)}")
-        if self.last_dxdy_mjd < self.mjd[-1]:
-            lines[-1] += f"; after that zero, with one sigma of {UNKNOWN_DXDY_SIGMA_MAS} mas"
-        return "\n".join(lines)
-
-
-def _lagrange(t: Floats) -> Floats:
-    """Weights of nodes -1, 0, 1, 2 at t, shape (4, ...)."""
-    return np.stack(
-        [
-            -t * (t - 1.0) * (t - 2.0) / 6.0,
-            (t + 1.0) * (t - 1.0) * (t - 2.0) / 2.0,
-            -(t + 1.0) * t * (t - 2.0) / 2.0,
-            (t + 1.0) * t * (t - 1.0) / 6.0,
-        ]
-    )
-
-
-def _lagrange_slope(t: Floats) -> Floats:
-    """Derivatives of `_lagrange` with respect to t."""
-    return np.stack(
-        [
-            -(3.0 * t * t - 6.0 * t + 2.0) / 6.0,
-            (3.0 * t * t - 4.0 * t - 1.0) / 2.0,
-            -(3.0 * t * t - 2.0 * t - 2.0) / 2.0,
-            (3.0 * t * t - 1.0) / 6.0,
-        ]
-    )
-
-
-def _combine(weights: Floats, values: Any, first: Any) -> Floats:
-    total: Floats = sum(
-        (weights[k] * values(first + k) for k in range(1, 4)), weights[0] * values(first)
-    )
-    return total
+        return described(self)
 
 
 def _read_only(values: Floats) -> Floats:
@@ -487,13 +415,6 @@ def _tai_minus_utc(mjd: Floats) -> Floats:
     return np.asarray(tai_minus_utc(mjd + MJD_ZERO, np.zeros_like(mjd)))
 
 
-def _calendar(mjd: float) -> str:
-    try:
-        return date.fromordinal(int(np.floor(mjd)) + _MJD_OF_ORDINAL).isoformat()
-    except (ValueError, OverflowError):
-        return f"MJD {mjd:.1f}"
-
-
 @cache
 def _bundled() -> EarthOrientation:
     from astropy_iers_data import IERS_A_FILE, IERS_B_FILE, __version__
@@ -502,31 +423,4 @@ def _bundled() -> EarthOrientation:
     last = float(final.values["mjd"][-1])
     later = read_days(IERS_A_FILE, after_mjd=last)
     name = f"{final.layout.name}, then {later.layout.name} (astropy-iers-data {__version__})"
-    return _from_days(name, IERS_A_FILE, [final, later])
-
-
-def _from_days(name: str, path: str | PathLike[str], parts: list[Days]) -> EarthOrientation:
-    """One series of the days of several files, the last of which is at `path`."""
-    parts = [part for part in parts if part.kind.size]
-    values: dict[str, Any] = {
-        key: np.concatenate([part.values[key] for part in parts]) for key in parts[0].values
-    }
-    mjd = values.pop("mjd")
-    if mjd.size < 4:
-        raise FileError(path, None, f"{mjd.size} days; at least 4 are needed to interpolate")
-    if np.any(np.diff(mjd) != 1.0):
-        gap = mjd[np.flatnonzero(np.diff(mjd) != 1.0)[0]]
-        raise FileError(path, None, f"the series does not go on after MJD {gap:.0f}")
-    unknown = np.isnan(values["dx_mas"])
-    for key in ("dx_mas", "dy_mas"):
-        values[key][unknown] = 0.0
-        values[f"sigma_{key}"][unknown] = UNKNOWN_DXDY_SIGMA_MAS
-    given = mjd[~unknown]
-    values["ut1_tai_s"] = values.pop("ut1_utc_s") - _tai_minus_utc(mjd)
-    return EarthOrientation(
-        name=name,
-        mjd=mjd,
-        kind=np.concatenate([part.kind for part in parts]),
-        last_dxdy_mjd=float(given[-1]) if given.size else -np.inf,
-        **values,
-    )
+    return EarthOrientation(name=name, **joined([final, later], IERS_A_FILE))

@@ -12,12 +12,14 @@ from bisect import bisect_right
 from dataclasses import dataclass
 from os import PathLike
 from pathlib import Path
-from typing import Final
+from typing import Any, Final
 
 import numpy as np
 from numpy.typing import NDArray
 
+from lighttime.constants import MJD_ZERO
 from lighttime.errors import FileError
+from lighttime.timescales.scales import tai_minus_utc
 
 Floats = NDArray[np.float64]
 
@@ -91,10 +93,16 @@ FINALS2000A: Final = Layout(
 )
 """Source: the description of finals2000A, IERS Rapid Service (Bulletin A columns)."""
 
+UNKNOWN_DXDY_SIGMA_MAS: Final = 0.3
+"""One sigma of dX and dY taken as zero where no value is published, mas.
+
+The amplitude that the free core nutation, their unpredictable part, typically has (from
+memory)."""
+
 LARGEST: Final = {
+    "ut1_utc_s": 2.0,
     "xp_arcsec": 2.0,
     "yp_arcsec": 2.0,
-    "ut1_utc_s": 2.0,
     "dx_mas": 100.0,
     "dy_mas": 100.0,
 }
@@ -243,3 +251,35 @@ class _Reader:
 
     def _fail(self, row: int, reason: str) -> None:
         raise FileError(self.path, self.first + int(row), reason)
+
+
+def joined(parts: list[Days], path: str | PathLike[str]) -> dict[str, Any]:
+    """One series of the days of several files, the last of which is at `path`.
+
+    Returns
+    -------
+    dict
+        The attributes of an `EarthOrientation` by name.
+    """
+    parts = [part for part in parts if part.kind.size]
+    values: dict[str, Any] = {
+        key: np.concatenate([part.values[key] for part in parts]) for key in parts[0].values
+    }
+    mjd = values.pop("mjd")
+    if mjd.size < 4:
+        raise FileError(path, None, f"{mjd.size} days; at least 4 are needed to interpolate")
+    if np.any(np.diff(mjd) != 1.0):
+        gap = mjd[np.flatnonzero(np.diff(mjd) != 1.0)[0]]
+        raise FileError(path, None, f"the series does not go on after MJD {gap:.0f}")
+    unknown = np.isnan(values["dx_mas"])
+    for key in ("dx_mas", "dy_mas"):
+        values[key][unknown] = 0.0
+        values[f"sigma_{key}"][unknown] = UNKNOWN_DXDY_SIGMA_MAS
+    given = mjd[~unknown]
+    values["ut1_tai_s"] = values.pop("ut1_utc_s") - tai_minus_utc(
+        mjd + MJD_ZERO, np.zeros_like(mjd)
+    )
+    values["mjd"] = mjd
+    values["kind"] = np.concatenate([part.kind for part in parts])
+    values["last_dxdy_mjd"] = float(given[-1]) if given.size else -np.inf
+    return values

@@ -160,6 +160,7 @@ class StationMotion:
             "tdb_minus_tt_s": tdb_tt, "xp_rad": xp, "yp_rad": yp, "x_rad": x, "y_rad": y,
             "s_rad": s, "era_rad": era, "itrf_m": itrf, "gcrs_m": gcrs,
             "earth_velocity_m_per_s": earth_velocity, "potential_m2_per_s2": potential,
+            "sun_geocentric_m": sun, "moon_geocentric_m": moon,
         }  # fmt: skip
         return StationEvent(
             seconds=seconds,

@@ -94,6 +94,7 @@ class ReflectorMotion:
         ladder = {
             "libration_rad": angles, "principal_axes_m": local, "icrs_m": icrs,
             "moon_geocentric_m": geocentric, "moon_velocity_m_per_s": moon_velocity,
+            "sun_from_moon_m": sun,
         }  # fmt: skip
         return ReflectorEvent(seconds, position, velocity, moon, moon_velocity, shifts, ladder)
 

@@ -23,8 +23,9 @@ CATALOGUE = Path(pyTMD.__file__).parent / "data" / "hw1995_tab.txt"
 TABLE = Path(__file__).parent.parent / "lighttime" / "data" / "tidal_potential.csv"
 LINES = 342
 HEAD = """\
-# Source: Hartmann & Wenzel 1995, Geophys. Res. Lett. 22, 3553: the 342 largest lines of degree 2, in the normalisation of Cartwright & Tayler 1971
-# Multipliers of the Doodson arguments tau, s, h, p, N', p_s; amplitude in metres of the equilibrium tide
+# Source: Hartmann & Wenzel 1995, Geophys. Res. Lett. 22, 3553: the 342 largest lines of degree 2
+# Multipliers of the Doodson arguments tau, s, h, p, N', p_s. Amplitude: metres of the equilibrium
+# tide, in the normalisation of Cartwright & Tayler 1971.
 tau,s,h,p,n_prime,p_s,amplitude_m
 """
 

@@ -13,36 +13,19 @@ from numpy.typing import ArrayLike, NDArray
 
 from lighttime.constants import ARCSECOND, DAY, MILLIARCSECOND, MJD_ZERO, TT_MINUS_TAI
 from lighttime.earth.interpolation import combine, lagrange, lagrange_slope
+from lighttime.earth.pole import PoleAndUT1
 from lighttime.earth.series_files import LARGEST, PREDICTED, joined, read_days
 from lighttime.earth.series_text import calendar, described
 from lighttime.earth.zonal import zonal_tides, zonal_ut1
 from lighttime.errors import CoverageError, InputError
 from lighttime.timescales.scales import tai_minus_utc, tai_to_utc
 
+__all__ = ["EarthOrientation", "PoleAndUT1"]
+
 Floats = NDArray[np.float64]
 
 BLOCK: Final = 512
 """Nodes whose zonal tides are computed together, when first asked for."""
-
-
-@dataclass(frozen=True)
-class PoleAndUT1:
-    """UT1 and the pole at some instants, or their sigmas, or their rates per second of TAI.
-
-    Every attribute is a float or an array of the shape of the instants. The effects of ocean
-    tides and of libration with periods of a day and less are not contained.
-    """
-
-    ut1_tai_s: Any
-    """UT1 - TAI, s."""
-    xp_rad: Any
-    """Coordinate x_p of the pole in the ITRF, rad."""
-    yp_rad: Any
-    """Coordinate y_p of the pole in the ITRF, rad."""
-    dx_rad: Any
-    """Correction dX to the pole of IAU 2006/2000A in the GCRS, rad."""
-    dy_rad: Any
-    """Correction dY to the pole of IAU 2006/2000A in the GCRS, rad."""
 
 
 _VALUES: Final = ("ut1_tai_s", "xp_arcsec", "yp_arcsec", "dx_mas", "dy_mas")

@@ -176,7 +176,8 @@ class _Reader:
         width = max(column.stop for column in layout.columns.values())
         self.path, self.layout, self.first = path, layout, first
         text = np.array(lines, dtype=f"S{width}")
-        self.characters = text.view(np.uint8).reshape(len(lines), width)
+        by_line = text.view(np.uint8).reshape(len(lines), width)
+        self.characters = np.ascontiguousarray(by_line.T)  # columns of text lie together
         self.characters[self.characters == 0] = ord(" ")
 
     def days(self) -> Days:
@@ -188,7 +189,7 @@ class _Reader:
             self._fail(steps[0] + 1, "the day does not follow that of the line before")
         kind = np.full(count, FINAL if not self.layout.flags else RAPID, dtype=np.int8)
         for position in self.layout.flags:
-            letters = self.characters[:count, position]
+            letters = self.characters[position, :count]
             unknown = np.flatnonzero((letters != ord("I")) & (letters != ord("P")))
             if unknown.size:
                 self._fail(unknown[0], f"expected I or P in column {position + 1}")
@@ -216,37 +217,37 @@ class _Reader:
     def _numbers(self, name: str) -> Floats:
         """One column; NaN where it is blank."""
         column = self.layout.columns[name]
-        field = self.characters[:, column.start : column.stop]
-        point = field.shape[1] - column.decimals - 1
-        whole, fraction = field[:, :point], field[:, point + 1 :]
-        blank = (field == ord(" ")).all(axis=1)
+        field = self.characters[column.start : column.stop]
+        point = len(field) - column.decimals - 1
+        digit = field - np.uint8(ord("0"))  # anything but a digit wraps round to above 9
+        is_digit = digit <= 9
+        blank, minus = field == ord(" "), field == ord("-")
 
         # In front of the point stand blanks, then at most one sign, then digits.
-        rank = np.full(whole.shape, -1, dtype=np.int8)
-        rank[whole == ord(" ")] = 0
-        rank[(whole == ord("-")) | (whole == ord("+"))] = 1
-        rank[(whole >= ord("0")) & (whole <= ord("9"))] = 2
-        good = (rank >= 0).all(axis=1) & (np.diff(rank, axis=1) >= 0).all(axis=1)
-        good &= (rank == 1).sum(axis=1) <= 1
-        good &= field[:, point] == ord(".")
-        good &= ((fraction >= ord("0")) & (fraction <= ord("9"))).all(axis=1)
-        wrong = np.flatnonzero(~good & ~blank)
+        sign = minus | (field == ord("+"))
+        rank = (sign + 2 * is_digit)[:point]
+        good = (blank | sign | is_digit)[:point].all(axis=0) & (rank[1:] >= rank[:-1]).all(axis=0)
+        good &= sign[:point].sum(axis=0) <= 1
+        good &= field[point] == ord(".")
+        good &= is_digit[point + 1 :].all(axis=0)
+        absent = blank.all(axis=0)
+        wrong = np.flatnonzero(~good & ~absent)
         if wrong.size:
-            self._fail(
-                wrong[0], f"{name} is no decimal: {bytes(field[wrong[0]]).decode('latin1')!r}"
-            )
+            text = bytes(field[:, wrong[0]]).decode("latin1")
+            self._fail(wrong[0], f"{name} is no decimal: {text!r}")
 
-        integer = np.zeros(len(field), dtype=np.int64)
-        for digits in (whole, fraction):
-            for digit in digits.T.astype(np.int64) - ord("0"):
-                integer = np.where((digit >= 0) & (digit <= 9), 10 * integer + digit, integer)
-        integer[(whole == ord("-")).any(axis=1)] *= -1
+        integer = np.zeros(field.shape[1], dtype=np.int64)
+        digit *= is_digit
+        for row in (*digit[:point], *digit[point + 1 :]):
+            integer *= 10
+            integer += row
+        integer[minus.any(axis=0)] *= -1
         numbers: Floats = integer / 10.0 ** (column.decimals - column.shift)
         limit = LARGEST.get(name, np.inf)
         wild = np.flatnonzero(np.abs(numbers) > limit)
         if wild.size:
             self._fail(wild[0], f"{name} is {numbers[wild[0]]}; allowed: -{limit} to {limit}")
-        numbers[blank] = np.nan
+        numbers[absent] = np.nan
         return numbers
 
     def _fail(self, row: int, reason: str) -> None:

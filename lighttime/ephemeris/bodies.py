@@ -216,13 +216,24 @@ class Ephemeris:
         LighttimeError
             If this ephemeris carries no lunar orientation.
         """
+        angles = self.orientation()
+        place = angles.locate(tdb1, tdb2, seconds)
+        return angles.value(place), angles.rate(place)
+
+    def orientation(self) -> Records:
+        """The records of the libration angles.
+
+        Raises
+        ------
+        LighttimeError
+            If this ephemeris carries no lunar orientation.
+        """
         if self.angles is None:
             raise LighttimeError(
                 f"ephemeris {self.name} carries no lunar orientation, and a reflector on the Moon "
                 "needs it: open it with Ephemeris.open(bsp, orientation=bpc)"
             )
-        place = self.angles.locate(tdb1, tdb2, seconds)
-        return self.angles.value(place), self.angles.rate(place)
+        return self.angles
 
 
 @cache

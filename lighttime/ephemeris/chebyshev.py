@@ -111,12 +111,45 @@ class Records:
     def value(self, place: Place) -> Array:
         """The polynomials at the instants of `place`, shape (components, ...)."""
         x = place.days * (2.0 / self.span_days)
-        return self._sum(place.index, _polynomials(x, self._terms))
+        return self._sum(place.index, polynomials(x, self._terms))
 
     def rate(self, place: Place) -> Array:
         """The derivatives by time at the instants of `place`, per second."""
         x = place.days * (2.0 / self.span_days)
         return self._sum(place.index, _slopes(x, self._terms)) * (2.0 / (self.span_days * DAY))
+
+    def jet(self, place: Place, order: int) -> Array:
+        """Value and derivatives by time at the instants of `place`.
+
+        Parameters
+        ----------
+        place : Place
+            Shape (n,).
+        order : int
+            The highest derivative.
+
+        Returns
+        -------
+        ndarray, shape (order + 1, components, n)
+            Derivatives per second, per second^2 and so on.
+        """
+        x = place.days * (2.0 / self.span_days)
+        basis = polynomials(x, self._terms)
+        components = self.coefficients.shape[1]
+        out = np.empty(((order + 1) * components, x.size))
+        for records, columns in _groups(place.index):
+            if isinstance(records, np.ndarray):
+                rows, back = np.unique(records, return_inverse=True)
+                series = _derivatives(self.coefficients[rows], order)[back]
+                out[:, columns] = np.einsum("nkt,tn->kn", series, basis[:, columns])
+            else:
+                series = _derivatives(self.coefficients[records], order)
+                out[:, columns] = series @ basis[:, columns]
+        jet = out.reshape(order + 1, components, x.size)
+        per_second = 2.0 / (self.span_days * DAY)
+        for k in range(order + 1):
+            jet[k] *= self.scale * per_second**k
+        return jet
 
     def difference(
         self, jd1: ArrayLike, jd2: ArrayLike, start_s: ArrayLike, end_s: ArrayLike
@@ -227,7 +260,7 @@ def _groups(index: Index) -> Iterator[tuple[Index | int, Index | slice]]:
         yield int(index[first]), slice(first, last)
 
 
-def _polynomials(x: Array, terms: int) -> Array:
+def polynomials(x: Array, terms: int) -> Array:
     """T_n(x) for n below `terms`, shape (terms, ...)."""
     t = np.empty((terms, *np.shape(x)))
     t[0] = 1.0
@@ -237,6 +270,33 @@ def _polynomials(x: Array, terms: int) -> Array:
     for n in range(2, terms):
         t[n] = two_x * t[n - 1] - t[n - 2]
     return t
+
+
+def _derivatives(coefficients: Array, order: int) -> Array:
+    """Series of the derivatives by x, behind the series itself.
+
+    Parameters
+    ----------
+    coefficients : ndarray, shape (..., components, terms)
+
+    Returns
+    -------
+    ndarray, shape (..., (order + 1) * components, terms)
+
+    Notes
+    -----
+    b_(n-1) = b_(n+1) + 2 n a_n, and half of that for b_0 (Abramowitz & Stegun 22.7 integrated).
+    """
+    series = [np.asarray(coefficients)]
+    for _ in range(order):
+        a = series[-1]
+        b = np.zeros_like(a)
+        for n in range(a.shape[-1] - 1, 0, -1):
+            above = b[..., n + 1] if n + 1 < a.shape[-1] else 0.0
+            b[..., n - 1] = above + 2.0 * n * a[..., n]
+        b[..., 0] *= 0.5
+        series.append(b)
+    return np.concatenate(series, axis=-2)
 
 
 def _slopes(x: Array, terms: int) -> Array:
@@ -258,7 +318,7 @@ def _differences(x: Array, dx: Array, terms: int) -> Array:
     Subtract the recurrence T_(n+1) = 2 x T_n - T_(n-1) at two arguments:
     D_(n+1) = 2 (x + dx) D_n + 2 dx T_n(x) - D_(n-1).
     """
-    t = _polynomials(x, terms)
+    t = polynomials(x, terms)
     d = np.empty((terms, *np.broadcast_shapes(np.shape(x), np.shape(dx))))
     d[0] = 0.0
     if terms > 1:

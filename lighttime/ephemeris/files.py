@@ -33,8 +33,8 @@ def de421() -> Ephemeris:
     folder = files("de421")
 
     def rows(file: str) -> Array:
-        array: Array = np.load(str(folder.joinpath(f"{file}.npy")), mmap_mode="r")
-        return array
+        # as a plain array: numpy's own class for mapped files is slow to index
+        return np.asarray(np.load(str(folder.joinpath(f"{file}.npy")), mmap_mode="r"))
 
     raw = {k.decode(): float(v) for k, v in np.load(str(folder.joinpath("constants.npy")))}
     start, end, au = raw["jalpha"], raw["jomega"], raw["AU"] * KILOMETRE

@@ -2,20 +2,36 @@
 
 Barycentric coordinates in float64 are a grid of 30 micrometres. Seen from the Earth's own place
 at the tagged instant, everything that takes part in a round trip is within 500 000 km, and the
-30 to 80 km by which the Earth moves meanwhile come from a difference of polynomials.
+30 to 80 km by which the Earth moves meanwhile are a sum of small powers, not a difference of
+large numbers.
+
+The events of a round trip lie within seconds of the tagged instant, where the Earth, the Moon
+and the libration are their Taylor series: the records are evaluated once, with derivatives. The
+few epochs that have the seam of two records within those seconds, and events further away (light
+times to planets), take the difference of polynomials instead.
 """
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from lighttime.constants import DAY
 from lighttime.ephemeris.bodies import PLANETS, Ephemeris
+from lighttime.ephemeris.chebyshev import Records
 
 Array = NDArray[np.float64]
+
+NEAR_S = 4.0
+"""Taylor series reach this far: the first neglected term is below 1e-12 m there.
+
+(Fourth derivative of the geocentric Moon: 2e-14 m/s^4, times 4^4/24 s^4.)"""
+
+ORDER = 3
 
 
 @dataclass(frozen=True, eq=False)
@@ -33,25 +49,94 @@ class EarthFrame:
     tdb1: Array
     tdb2: Array
 
+    # -- Taylor series at the tagged instant -------------------------------------------------
+
     @cached_property
+    def _barycentre(self) -> Array:
+        return self._jet(self.ephemeris.barycentric["earth_moon_barycentre"])
+
+    @cached_property
+    def _moon(self) -> Array:
+        return self._jet(self.ephemeris.moon_from_earth)
+
+    @cached_property
+    def _earth(self) -> Array:
+        offset = self.ephemeris.earth_from_barycentre
+        if isinstance(offset, Records):
+            return self._barycentre + self._jet(offset)
+        return self._barycentre + offset * self._moon
+
+    @cached_property
+    def _angles(self) -> Array:
+        return self._jet(self.ephemeris.orientation())
+
+    def _jet(self, records: Records) -> Array:
+        return records.jet(records.locate(self.tdb1, self.tdb2), ORDER)
+
+    @cached_property
+    def _seam(self) -> NDArray[np.bool_]:
+        """Epochs that have the end of a record of Earth, Moon or libration near them."""
+        ephemeris = self.ephemeris
+        rows = (
+            ephemeris.barycentric["earth_moon_barycentre"],
+            ephemeris.moon_from_earth,
+            ephemeris.earth_from_barycentre,
+            ephemeris.angles,
+        )
+        near = np.zeros(np.shape(self.tdb1), dtype=bool)
+        for records in rows:
+            if isinstance(records, Records):
+                days = np.abs(records.locate(self.tdb1, self.tdb2).days)
+                near |= days > 0.5 * records.span_days - NEAR_S / DAY
+        return near
+
+    def _at(
+        self,
+        seconds: Array,
+        taylor: Callable[[Array], tuple[Array, Array]],
+        exact: Callable[[Array, Array, Array], tuple[Array, Array]],
+    ) -> tuple[Array, Array]:
+        """Taylor series where they hold, the polynomials themselves elsewhere."""
+        far = self._seam | (np.abs(seconds) > NEAR_S)
+        value, rate = taylor(seconds)
+        if np.any(far):
+            some = exact(self.tdb1[far], self.tdb2[far], seconds[far])
+            value[:, far], rate[:, far] = some
+        return value, rate
+
+    # -- what is asked -----------------------------------------------------------------------
+
+    @property
     def origin(self) -> tuple[Array, Array]:
         """BCRS position (to 30 micrometres) and velocity of the Earth at the tagged instant."""
-        return self.ephemeris.earth(self.tdb1, self.tdb2)
+        return self._earth[0], self._earth[1]
 
     def earth(self, seconds: Array) -> tuple[Array, Array]:
         """The Earth at an event: position in this frame (m) and velocity (m/s), (3, n)."""
-        _, velocity = self.ephemeris.earth(self.tdb1, self.tdb2, seconds)
-        return self.ephemeris.earth_displacement(self.tdb1, self.tdb2, 0.0, seconds), velocity
+        ephemeris = self.ephemeris
+
+        def exact(tdb1: Array, tdb2: Array, seconds: Array) -> tuple[Array, Array]:
+            _, velocity = ephemeris.earth(tdb1, tdb2, seconds)
+            return ephemeris.earth_displacement(tdb1, tdb2, 0.0, seconds), velocity
+
+        return self._at(seconds, lambda s: _taylor(self._earth, s, whole=False), exact)
 
     def moon_geocentric(self, seconds: Array) -> tuple[Array, Array]:
         """Moon minus Earth at an event: position (m) and velocity (m/s), (3, n)."""
-        return self.ephemeris.moon_geocentric(self.tdb1, self.tdb2, seconds)
+        return self._at(
+            seconds, lambda s: _taylor(self._moon, s), self.ephemeris.moon_geocentric
+        )
+
+    def libration(self, seconds: Array) -> tuple[Array, Array]:
+        """Libration angles (rad) and their rates (rad/s) at an event, (3, n)."""
+        return self._at(seconds, lambda s: _taylor(self._angles, s), self.ephemeris.libration)
 
     @cached_property
     def _distant(self) -> dict[str, tuple[Array, Array]]:
         place = {}
         for body in ("sun", *(p for p in PLANETS if p in self.ephemeris.barycentric)):
-            position, velocity = self.ephemeris.barycentric_body(body, self.tdb1, self.tdb2)
+            records = self.ephemeris.barycentric[body]
+            position, velocity = records.jet(records.locate(self.tdb1, self.tdb2), 1)
             place[body] = (position - self.origin[0], velocity)
         return place
 
@@ -68,3 +153,10 @@ class EarthFrame:
         """
         position, velocity = self._distant[body]
         return position + velocity * np.asarray(seconds), velocity
+
+
+def _taylor(jet: Array, s: Array, whole: bool = True) -> tuple[Array, Array]:
+    """Value (or, without its constant term, displacement) and rate after s seconds."""
+    position, velocity, acceleration, jerk = jet
+    moved = s * (velocity + s / 2.0 * (acceleration + s / 3.0 * jerk))
+    return (position + moved if whole else moved), velocity + s * (acceleration + s / 2.0 * jerk)

@@ -70,7 +70,7 @@ class ReflectorMotion:
         earth, earth_velocity = frame.earth(seconds)
         geocentric, geocentric_velocity = frame.moon_geocentric(seconds)
         moon, moon_velocity = earth + geocentric, earth_velocity + geocentric_velocity
-        angles, rates = frame.ephemeris.libration(frame.tdb1, frame.tdb2, seconds)
+        angles, rates = frame.libration(seconds)
         axes = principal_axes(angles)
         sun = frame.distant("sun", seconds)[0] - moon
         # -- principal axes -------------------------------------------------------------------

@@ -9,6 +9,7 @@ Source: IERS Conventions (2010), TN36, 8.2 (ocean tides), 5.5.1 and 5.5.3 (libra
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import dataclass
 from functools import cache
 from typing import Any, Final
 
@@ -16,7 +17,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from lighttime.constants import MICROARCSECOND, MJD_ZERO, TURN
-from lighttime.data import Table, table
+from lighttime.data import table
 from lighttime.earth.arguments import centuries, fundamental_arguments, mean_sidereal_angle
 
 Floats = NDArray[np.float64]
@@ -148,28 +149,43 @@ def ut1_libration(
     return dut1 * 1e-6, dlod * 1e-6
 
 
-def libration_sums(tides: Table, names: tuple[str, ...], arguments: Floats) -> Floats:
+def libration_sums(lines: Lines, arguments: Floats) -> Floats:
     """Sums of sines and cosines over the lines of a table.
 
     Parameters
     ----------
-    tides : table
-        With multipliers of the arguments, and amplitudes ``<name>_sin`` and ``<name>_cos``.
-    names : tuple of str
+    lines : Lines
     arguments : ndarray, shape (6, n)
         GMST + pi, l, l', F, D, Omega, rad.
 
     Returns
     -------
-    ndarray, shape (len(names), n)
+    ndarray, shape (quantities, n)
         In the unit of the table.
     """
-    multipliers = np.stack([tides[k] for k in ("theta", "l", "l_sun", "F", "D", "Omega")], axis=1)
-    sines = np.stack([tides[f"{name}_sin"] for name in names])
-    cosines = np.stack([tides[f"{name}_cos"] for name in names])
-    angle = multipliers @ arguments
-    total: Floats = sines @ np.sin(angle) + cosines @ np.cos(angle)
+    angle = lines.multipliers @ arguments
+    total: Floats = lines.sines @ np.sin(angle) + lines.cosines @ np.cos(angle)
     return total
+
+
+@dataclass(frozen=True, eq=False)
+class Lines:
+    """A table of libration: multipliers (lines, 6), amplitudes (quantities, lines)."""
+
+    multipliers: Floats
+    sines: Floats
+    cosines: Floats
+
+
+@cache
+def libration_lines(name: str, quantities: tuple[str, ...]) -> Lines:
+    """The lines of a table, with amplitudes ``<quantity>_sin`` and ``<quantity>_cos``."""
+    columns = table(name)
+    return Lines(
+        np.stack([columns[k] for k in ("theta", "l", "l_sun", "F", "D", "Omega")], axis=1),
+        np.stack([columns[f"{quantity}_sin"] for quantity in quantities]),
+        np.stack([columns[f"{quantity}_cos"] for quantity in quantities]),
+    )
 
 
 def _libration(
@@ -180,9 +196,11 @@ def _libration(
     tt1: ArrayLike,
     tt2: ArrayLike,
 ) -> Floats:
+    lines = libration_lines(name, quantities)
+
     def sums(t: Floats, sidereal: Floats) -> Floats:
         arguments = np.vstack([sidereal + 0.5 * TURN, fundamental_arguments(t)])
-        return libration_sums(table(name), quantities, arguments)
+        return libration_sums(lines, arguments)
 
     sidereal = mean_sidereal_angle(ut1_1, ut1_2)
     return _in_blocks(sums, len(quantities), centuries(tt1, tt2), sidereal)

@@ -248,11 +248,18 @@ def _fractions(
         height_m=height_m,
         temperature_k=temperature_k,
     )
-    return (
-        12100.8e-7 + 1729.5e-9 * celsius + 319.1e-7 * cosine - 1847.8e-11 * height,
-        30496.5e-7 + 234.6e-8 * celsius - 103.5e-6 * cosine - 185.6e-10 * height,
-        6877.7e-5 + 197.2e-7 * celsius - 345.8e-5 * cosine + 106.0e-9 * height,
+    a1, a2, a3 = (
+        one + warm * celsius + south * cosine + high * height for one, warm, south, high in FCULA
     )
+    return a1, a2, a3
+
+
+FCULA = (
+    (12100.8e-7, 1729.5e-9, 319.1e-7, -1847.8e-11),
+    (30496.5e-7, 234.6e-8, -103.5e-6, -185.6e-10),
+    (6877.7e-5, 197.2e-7, -345.8e-5, 106.0e-9),
+)
+"""a1, a2, a3 by 1, Celsius temperature, cosine of latitude, height. Source: TN36, table 9.1."""
 
 
 def slant_delay(

@@ -94,11 +94,25 @@ class Weather:
         """
         pressure, temperature = np.asarray(self.pressure_hpa), np.asarray(self.temperature_k)
         celsius = temperature - 273.15
-        enhancement = 1.00062 + 3.14e-6 * pressure + 5.6e-7 * celsius**2
+        one, of_pressure, of_warmth = _ENHANCEMENT
+        enhancement = one + of_pressure * pressure + of_warmth * celsius**2
         vapour: Array = (
             np.asarray(self.relative_humidity) * enhancement * saturation_pressure_hpa(temperature)
         )
         return vapour
+
+    @property
+    def vapour_pressure_slopes(self) -> tuple[Array, Array, Array]:
+        """Derivatives of `vapour_pressure_hpa` by pressure, temperature and relative humidity."""
+        pressure, temperature = np.asarray(self.pressure_hpa), np.asarray(self.temperature_k)
+        humidity = np.asarray(self.relative_humidity)
+        celsius = temperature - 273.15
+        one, of_pressure, of_warmth = _ENHANCEMENT
+        enhancement = one + of_pressure * pressure + of_warmth * celsius**2
+        saturation = saturation_pressure_hpa(temperature)
+        warmer = enhancement * saturation_pressure_slope(temperature)
+        warmer = warmer + 2.0 * of_warmth * celsius * saturation
+        return humidity * of_pressure * saturation, humidity * warmer, enhancement * saturation
 
     def __eq__(self, other: object) -> bool:
         if not isinstance(other, Weather):
@@ -135,8 +149,21 @@ def saturation_pressure_hpa(temperature_k: ArrayLike) -> Array:
     23.39
     """
     t = np.asarray(temperature_k, dtype=float)
-    pascal: Array = np.exp(1.2378847e-5 * t**2 - 1.9121316e-2 * t + 33.93711047 - 6.3431645e3 / t)
+    a, b, c, d = _SATURATION
+    pascal: Array = np.exp(a * t**2 + b * t + c + d / t)
     return pascal / 100.0
+
+
+def saturation_pressure_slope(temperature_k: ArrayLike) -> Array:
+    """Derivative of `saturation_pressure_hpa` with respect to the temperature, hPa/K."""
+    t = np.asarray(temperature_k, dtype=float)
+    a, b, _, d = _SATURATION
+    slope: Array = saturation_pressure_hpa(t) * (2.0 * a * t + b - d / t**2)
+    return slope
+
+
+_SATURATION = (1.2378847e-5, -1.9121316e-2, 33.93711047, -6.3431645e3)
+_ENHANCEMENT = (1.00062, 3.14e-6, 5.6e-7)
 
 
 # -- units given by mistake ----------------------------------------------------------------

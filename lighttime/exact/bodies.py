@@ -65,14 +65,14 @@ class Tables:
         self.gm["moon"] = both / (1 + self.earth_moon_ratio)
         self.gm["earth"] = both - self.gm["moon"]
 
-    def _state(self, name: str, tdb: Real) -> State:
+    def _from_records(self, name: str, tdb: Real) -> State:
         position, velocity = self.records[name].at(tdb)
         metres = self.ctx.mpf(1000)
         return State(position * metres, velocity * (metres / 86400))
 
     def earth_and_moon(self, tdb: Real) -> tuple[State, State]:
         """The Earth and the Moon: the barycentre of the two divides their line by mass."""
-        barycentre, moon = self._state("earthmoon", tdb), self._state("moon", tdb)
+        barycentre, moon = self._from_records("earthmoon", tdb), self._from_records("moon", tdb)
         share = 1 / (1 + self.earth_moon_ratio)
         earth = State(
             barycentre.position - moon.position * share,
@@ -82,13 +82,20 @@ class Tables:
 
     def sun(self, tdb: Real) -> State:
         """The Sun."""
-        return self._state("sun", tdb)
+        return self._from_records("sun", tdb)
 
     def all(self, tdb: Real) -> dict[str, State]:
         """Every body in `BODIES`."""
         earth, moon = self.earth_and_moon(tdb)
-        planets = {name: self._state(name, tdb) for name in PLANETS}
+        planets = {name: self._from_records(name, tdb) for name in PLANETS}
         return {"sun": self.sun(tdb), "earth": earth, "moon": moon, **planets}
+
+    def state(self, body: str, tdb: Real) -> State:
+        """Any one of `BODIES`."""
+        if body in ("earth", "moon"):
+            earth, moon = self.earth_and_moon(tdb)
+            return earth if body == "earth" else moon
+        return self._from_records(body, tdb)
 
     def librations(self, tdb: Real) -> Vector:
         """Euler angles phi, theta, psi of the Moon's principal axes, rad."""

@@ -43,8 +43,9 @@ def context(digits: int) -> Context:
 
     Examples
     --------
-    >>> context(30).mpf(1) / 3
-    mpf('0.33333333333333333333333333333333333333333333333')
+    >>> arithmetic = context(30)
+    >>> print(arithmetic.nstr(arithmetic.mpf(2) / 3, 30))
+    0.666666666666666666666666666667
     """
     if isinstance(digits, bool) or not isinstance(digits, int) or not 20 <= digits <= 1000:
         raise InputError("digits", digits, "20 to 1000, a whole number")

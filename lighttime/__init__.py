@@ -7,6 +7,7 @@
 
 from __future__ import annotations
 
+from functools import cache
 from typing import Any
 
 from lighttime.answer import OneWay, RoundTrip
@@ -59,9 +60,14 @@ __all__ = [
 
 def round_trip(when: Any, station: Any, reflector: Any, **more: Any) -> RoundTrip:
     """The round trip by the default model: see `Model.round_trip`."""
-    return Model().round_trip(when, station, reflector, **more)
+    return _default_model().round_trip(when, station, reflector, **more)
 
 
 def one_way(when: Any, start: Any, end: Any, **more: Any) -> OneWay:
     """The one-way light time by the default model: see `Model.one_way`."""
-    return Model().one_way(when, start, end, **more)
+    return _default_model().one_way(when, start, end, **more)
+
+
+@cache
+def _default_model() -> Model:
+    return Model()

@@ -3,14 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Mapping
-from dataclasses import dataclass
-from typing import Any
+from dataclasses import dataclass, fields
+from typing import Any, ClassVar
 
 import numpy as np
 
 from lighttime.answer import OneWay, RoundTrip, join
 from lighttime.constants import DAY, SPEED_OF_LIGHT
-from lighttime.earth.motion import StationMotion, day_fraction
+from lighttime.earth.motion import StationMotion
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
@@ -23,10 +23,9 @@ from lighttime.path.ends import Trajectory, TrajectoryMotion
 from lighttime.path.legs import Legs, solve_one_way, solve_round_trip
 from lighttime.path.troposphere import Weather, slant_delay
 from lighttime.query import Query
+from lighttime.tables import Tables
 from lighttime.terms import omitted
 from lighttime.timescales import Epoch
-from lighttime.timescales.scales import tt_to_tai
-from lighttime.timescales.tdb import tdb_minus_tt
 from lighttime.vectors import Array
 
 BLOCK = 8192
@@ -77,6 +76,8 @@ class Model:
     moon_l2: float = 0.0107
     solar_bending: bool = False
 
+    _tables: ClassVar[Tables]  # one of its own for each model; no field, since no choice
+
     def __post_init__(self) -> None:
         put = object.__setattr__
         if self.ephemeris is None:
@@ -89,6 +90,14 @@ class Model:
             if not np.isfinite(value):
                 raise InputError(name, value, "a finite number")
             put(self, name, float(value))
+        put(self, "_tables", Tables())
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return Model, tuple(getattr(self, f.name) for f in fields(self))  # without the tables
+
+    def tables(self) -> str:
+        """What has been tabulated so far, and what the tables leave out; for people."""
+        return str(self._tables)
 
     # -- the range ---------------------------------------------------------------------------
 
@@ -136,12 +145,13 @@ class Model:
         """
         query = self._query(when, station, reflector, tag, weather, wavelength_nm, turnaround_s)
         blocks, done = [], 0
-        for part in query.blocks(BLOCK):
+        order = query.order()
+        for part in query.blocks(BLOCK, order):
             blocks.append(RoundTrip.of(self, part, self.solve(part)))
             done += part.size
             if progress is not None:
                 progress(done, query.size)
-        answer: RoundTrip = join(blocks, query)
+        answer: RoundTrip = join(blocks, query, order)
         return answer
 
     def one_way(
@@ -176,7 +186,8 @@ class Model:
         near, far = (start, end) if upward else (end, start)
         query = self._query(when, near, far, tag, weather, wavelength_nm, 0.0)
         blocks = []
-        for part in query.blocks(BLOCK):
+        order = query.order()
+        for part in query.blocks(BLOCK, order):
             _, near_end, far_end, delays = self._ends(part)
             known_near = upward == (tag == "transmit")
             leg = solve_one_way(
@@ -184,7 +195,7 @@ class Model:
                 +1 if tag == "transmit" else -1, upward, delays(upward), part.guess_s,
             )  # fmt: skip
             blocks.append(OneWay.of(self, part, leg, upward))
-        answer: OneWay = join(blocks, query)
+        answer: OneWay = join(blocks, query, order)
         return answer
 
     # -- solving one block -------------------------------------------------------------------
@@ -219,15 +230,20 @@ class Model:
 
     def _ends(self, query: Query) -> tuple[EarthFrame, Any, Any, Any]:
         """The working frame, both ends in it, and the delays between them."""
-        station = query.station if isinstance(query.station, Station) else None
-        tt1, tt2, tdb2, offset = self._instants(query.when, station)
-        frame = EarthFrame(self.ephemeris, tt1, tdb2)
+        tt1, tt2 = self._tt(query)
+        station = query.station
+        if isinstance(station, Station):
+            states = self._tables.of(self, station)
+            plan = states.plan(tt1, tt2)
+            tagged = states.at(tt1, tt2, plan)
+            tdb_minus_tt = tagged["tdb_minus_tt"]
+        else:
+            tdb_minus_tt = self._tables.celestial.at(tt1, tt2, frozenset())[3]
+        frame = EarthFrame(self.ephemeris, tt1, tt2 + tdb_minus_tt / DAY)
 
         def end(thing: Any, name: str) -> Any:
             if isinstance(thing, Station):
-                return StationMotion(
-                    thing, frame, tt1, tt2, offset, self.earth_orientation, self._omit
-                )
+                return StationMotion(states, plan, frame, tt1, tt2, tagged)
             if isinstance(thing, Reflector):
                 return ReflectorMotion(thing, frame, self.moon_h2, self.moon_l2, self._omit)
             return TrajectoryMotion(thing, frame, getattr(thing, "name", name))
@@ -248,33 +264,23 @@ class Model:
     def _omit(self) -> frozenset[str]:
         return self.omit  # type: ignore[return-value]
 
-    def _instants(self, when: Epoch, station: Station | None) -> tuple[Array, Array, Array, Array]:
-        """The tagged instants: TT in two parts, the second part of TDB, and TDB - TT.
-
-        The first part of TDB is that of TT: they are 2 ms apart at most.
-        """
-        tt = when.to("tt", place=station, earth_orientation=self.earth_orientation)
+    def _tt(self, query: Query) -> tuple[Array, Array]:
+        """The tagged instants, TT in two parts, within the span of the ephemeris."""
+        station = query.station if isinstance(query.station, Station) else None
+        tt = query.when.to("tt", place=station, earth_orientation=self.earth_orientation)
         tt1, tt2 = np.atleast_1d(tt.jd1), np.atleast_1d(tt.jd2)
         first, last = self.ephemeris.coverage
         margin = 10.0 / DAY  # the other events are within seconds
-        if not np.all((tt1 > first + margin) & (tt1 < last - margin)):
-            bad = float(tt1[~((tt1 > first + margin) & (tt1 < last - margin))][0])
+        outside = ~((tt1 > first + margin) & (tt1 < last - margin))
+        if np.any(outside):
+            bad = Epoch(float(tt1[outside][0]), 0.0, "tt")
             first_date, last_date = (Epoch(jd, 0.0, "tdb").isoformat(0) for jd in (first, last))
             raise CoverageError(
                 "when",
-                f"{Epoch(bad, 0.0, 'tt').isoformat(0)} TT",
+                f"{bad.isoformat(0)} TT",
                 f"{first_date} to {last_date} TDB, the span of {self.ephemeris.name}",
             )
-        if station is None:
-            ut1_fraction: Any = 0.0
-            place = None
-        else:
-            tai1, tai2 = tt_to_tai(tt1, tt2)
-            ut1_tai = self.earth_orientation.at(tai1, tai2).ut1_tai_s
-            ut1_fraction, place = day_fraction(tai1, tai2 + ut1_tai / DAY), station.xyz_m
-        offset = tdb_minus_tt(tt1, tt2, ut1_fraction, place)
-        offset = np.asarray(tdb_minus_tt(tt1, tt2 + offset / DAY, ut1_fraction, place))
-        return tt1, tt2, tt2 + offset / DAY, offset
+        return tt1, tt2
 
     def _troposphere(
         self, query: Query, weather: Weather, near: Any, far: Any, upward: bool

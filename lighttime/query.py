@@ -7,6 +7,7 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from lighttime.earth.station import Station
 from lighttime.errors import InputError
@@ -14,6 +15,8 @@ from lighttime.moon.reflector import Reflector
 from lighttime.path.legs import Tag
 from lighttime.path.troposphere import Weather
 from lighttime.timescales import Epoch
+
+Index = NDArray[np.intp]
 
 LUNAR_LEG_S = 1.28
 """First guess of the light time of a leg to the Moon; Newton's method does the rest."""
@@ -71,14 +74,22 @@ class Query:
         lunar = isinstance(self.station, Station) and isinstance(self.reflector, Reflector)
         return LUNAR_LEG_S if lunar else 0.0
 
-    def blocks(self, size: int) -> Iterator[Query]:
-        """The same query in flat parts of at most `size` instants."""
+    def order(self) -> Index | None:
+        """The order in which the flat instants are worked off: by time; None if they are so."""
+        jd = np.ravel(self.when.jd1)
+        if jd.size < 2 or np.all(jd[1:] >= jd[:-1]):
+            return None
+        return np.argsort(jd, kind="stable")
+
+    def blocks(self, size: int, order: Index | None = None) -> Iterator[Query]:
+        """The same query in flat parts of at most `size` instants, in `order` if it is given."""
         when = Epoch(np.ravel(self.when.jd1), np.ravel(self.when.jd2), self.when.scale)
         for first in range(0, max(self.size, 1), size):  # no epochs at all are a block, too
             part = slice(first, first + size)
-            yield replace(self, when=when[part], weather=self._weather(part))
+            index = part if order is None else order[part]
+            yield replace(self, when=when[index], weather=self._weather(index))
 
-    def _weather(self, part: slice) -> Weather | None:
+    def _weather(self, part: slice | Index) -> Weather | None:
         weather = self.weather
         if weather is None or weather.shape == ():
             return weather

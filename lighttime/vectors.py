@@ -32,6 +32,6 @@ def unit(a: Array) -> Array:
     return a / norm(a)
 
 
-def column(values: tuple[float, float, float], like: Array) -> Array:
+def column(values: tuple[float, float, float] | Array, like: Array) -> Array:
     """Three numbers as a vector array that broadcasts against the instants `like`."""
     return np.asarray(values, dtype=float).reshape(3, *([1] * np.ndim(like)))

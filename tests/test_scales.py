@@ -360,3 +360,18 @@ def test_every_scale_reaches_every_other() -> None:
             there = start.to(target, earth_orientation=Ut1(-33.4))
             back = there.to(source, earth_orientation=Ut1(-33.4))
             assert abs((back.jd1 - start.jd1) + (back.jd2 - start.jd2)) * 86400 < 2e-20
+
+
+def test_terms_of_the_place_are_those_of_erfa() -> None:
+    """The topocentric terms are what ERFA's dtdb has with a place less what it has without."""
+    from lighttime.timescales.tdb import tdb_minus_tt, topocentric
+
+    rng = np.random.default_rng(5)
+    day, fraction, ut1 = (
+        rng.uniform(36934, 88068, 500) // 1 + 2400000.5,
+        *rng.uniform(0, 1, (2, 500)),
+    )
+    xyz = (4.0e6, -1.0e6, 4.8e6)
+    expected = tdb_minus_tt(day, fraction, ut1, xyz) - tdb_minus_tt(day, fraction, ut1)
+    assert np.abs(topocentric(day, fraction, ut1, xyz) - expected).max() < 1e-18
+    assert np.abs(expected).max() > 1.8e-6

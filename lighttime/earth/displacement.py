@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
+from typing import TypeVar
 
 from lighttime.constants import J2000, JULIAN_YEAR
 from lighttime.earth import loading, tides
@@ -19,13 +20,18 @@ DISPLACEMENTS = (
 """Names of the terms, in the order in which they are added."""
 
 
+NEEDING_COEFFICIENTS = ("ocean_loading", "ocean_pole_tide", "atmosphere_loading")
+
+
 def not_modelled(station: Station) -> tuple[str, ...]:
     """Displacements that a station gives no coefficients for."""
-    return tuple(
-        name
-        for name in ("ocean_loading", "ocean_pole_tide", "atmosphere_loading")
-        if getattr(station, name) is None
-    )
+    return tuple(name for name in NEEDING_COEFFICIENTS if getattr(station, name) is None)
+
+
+def modelled(station: Station, omit: frozenset[str] = frozenset()) -> tuple[str, ...]:
+    """Displacements of a station that are neither omitted nor lack coefficients, in order."""
+    absent = omit.union(not_modelled(station))
+    return tuple(name for name in DISPLACEMENTS if name not in absent)
 
 
 def displacements(
@@ -62,24 +68,29 @@ def displacements(
         Those that are neither omitted nor lack coefficients.
     """
     xyz = station.xyz_m
-    moved: dict[str, Array] = {}
-    if "solid_earth_tide" not in omit:
-        moved["solid_earth_tide"] = tides.solid_earth_tide(
-            xyz, sun_itrf_m, moon_itrf_m, tt1, tt2, ut1_fraction
-        )
     years = ((tt1 - J2000) + tt2) / JULIAN_YEAR
-    if "pole_tide" not in omit:
-        moved["pole_tide"] = tides.pole_tide(xyz, xp_arcsec, yp_arcsec, years)
-    if station.ocean_loading is not None and "ocean_loading" not in omit:
-        moved["ocean_loading"] = loading.ocean_loading(
-            xyz, station.ocean_loading, tt1, tt2, ut1_fraction
-        )
-    if station.ocean_pole_tide is not None and "ocean_pole_tide" not in omit:
-        moved["ocean_pole_tide"] = loading.ocean_pole_tide_loading(
-            xyz, station.ocean_pole_tide, xp_arcsec, yp_arcsec, years
-        )
-    if station.atmosphere_loading is not None and "atmosphere_loading" not in omit:
-        moved["atmosphere_loading"] = loading.atmosphere_loading(
-            xyz, station.atmosphere_loading, ut1_fraction
-        )
-    return moved
+    evaluate: dict[str, Callable[[], Array]] = {
+        "solid_earth_tide": lambda: tides.solid_earth_tide(
+            xyz, sun_itrf_m, moon_itrf_m, tt1, tt2, ut1_fraction
+        ),
+        "pole_tide": lambda: tides.pole_tide(xyz, xp_arcsec, yp_arcsec, years),
+        "ocean_loading": lambda: loading.ocean_loading(
+            xyz, given(station.ocean_loading), tt1, tt2, ut1_fraction
+        ),
+        "ocean_pole_tide": lambda: loading.ocean_pole_tide_loading(
+            xyz, given(station.ocean_pole_tide), xp_arcsec, yp_arcsec, years
+        ),
+        "atmosphere_loading": lambda: loading.atmosphere_loading(
+            xyz, given(station.atmosphere_loading), ut1_fraction
+        ),
+    }
+    return {name: evaluate[name]() for name in modelled(station, omit)}
+
+
+T = TypeVar("T")
+
+
+def given(coefficients: T | None) -> T:
+    """Coefficients that `modelled` has found to be there."""
+    assert coefficients is not None
+    return coefficients

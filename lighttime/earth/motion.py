@@ -13,16 +13,11 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from lighttime.constants import ARCSECOND, DAY, EARTH_ROTATION_RATE, L_C, SPEED_OF_LIGHT
-from lighttime.earth import rotation, subdaily
-from lighttime.earth.displacement import displacements
-from lighttime.earth.series import EarthOrientation
-from lighttime.earth.station import Station
-from lighttime.earth.subdaily import subdaily
+from lighttime.constants import DAY, EARTH_ROTATION_RATE, L_C, SPEED_OF_LIGHT, TT_MINUS_TAI
+from lighttime.earth import rotation
+from lighttime.earth.state import Plan, StateModel, StationState
 from lighttime.ephemeris.frame import EarthFrame
-from lighttime.timescales.scales import tt_to_tai
-from lighttime.timescales.tdb import tdb_minus_tt
-from lighttime.vectors import Array, column, cross, dot, norm
+from lighttime.vectors import Array, column, cross, dot
 
 c = SPEED_OF_LIGHT
 
@@ -78,89 +73,75 @@ class StationMotion:
 
     Parameters
     ----------
-    station : Station
+    states : StateModel
+        Of this station.
+    plan : Plan
+        Which series its state may be read from.
     frame : EarthFrame
     tt1, tt2 : ndarray, shape (n,)
         The tagged instant, TT.
-    tdb_minus_tt : ndarray, shape (n,)
-        At the station at the tagged instant, s.
-    earth_orientation : EarthOrientation
-    omit : frozenset of str
-        Terms to leave out.
+    tagged : StationState
+        At the tagged instant.
     """
 
-    station: Station
+    states: StateModel
+    plan: Plan
     frame: EarthFrame
     tt1: Array
     tt2: Array
-    tdb_minus_tt: Array
-    earth_orientation: EarthOrientation
-    omit: frozenset[str] = frozenset()
+    tagged: StationState
 
     def at(self, seconds: Array) -> StationEvent:
         """The station `seconds` (TDB, shape (n,)) after the tagged instant."""
-        frame, station = self.frame, self.station
-        # -- time: TT runs as TDB does but for (TDB - TT) at the station --------------------
-        tai1, tai2 = tt_to_tai(self.tt1, self.tt2 + seconds / DAY)  # a nanosecond off at most
-        pole = self.earth_orientation.at(tai1, tai2)
-        ut1_fraction = day_fraction(tai1, tai2 + pole.ut1_tai_s / DAY)
-        tdb_tt = tdb_minus_tt(frame.tdb1, frame.tdb2 + seconds / DAY, ut1_fraction, station.xyz_m)
-        tt1, tt2 = self.tt1, self.tt2 + (seconds - (tdb_tt - self.tdb_minus_tt)) / DAY
-        tai1, tai2 = tt_to_tai(tt1, tt2)
+        station, omit = self.states.station, self.states.omit
+        state = self.tagged
+        if seconds.any():
+            # TT runs as TDB does, but for TDB - TT, which changes by a nanosecond at most
+            state = self.states.at(self.tt1, self.tt2 + seconds / DAY, self.plan)
+        tdb_tt = state["tdb_minus_tt"]
+        gained = tdb_tt - self.tagged["tdb_minus_tt"]
+        tt1, tt2 = self.tt1, self.tt2 + (seconds - gained) / DAY
         # -- orientation of the Earth ---------------------------------------------------------
-        if "subdaily_rotation" in self.omit:
-            dx = dy = dut1 = np.zeros_like(seconds)
-        else:
-            dx, dy, dut1 = subdaily(tai1, tai2 + pole.ut1_tai_s / DAY, tt1, tt2)
-        ut1_2 = tai2 + (pole.ut1_tai_s + dut1) / DAY
-        xp, yp = pole.xp_rad + dx, pole.yp_rad + dy
-        x, y, s = rotation.celestial_pole(tt1, tt2)
-        x, y = x + pole.dx_rad, y + pole.dy_rad
+        tai1, tai2 = tt1, tt2 - TT_MINUS_TAI / DAY
+        ut1_2 = tai2 + state["ut1_minus_tai"] / DAY
+        x, y, s = state["x"], state["y"], state["s"]
         era = rotation.earth_rotation_angle(tai1, ut1_2)
-        to_gcrs = rotation.terrestrial_to_celestial(x, y, s, era, xp, yp, tt1, tt2)
-        # -- the station in the ITRF ----------------------------------------------------------
-        earth, earth_velocity = frame.earth(seconds)
-        moon, _ = frame.moon_geocentric(seconds)
-        sun = frame.distant("sun", seconds)[0] - earth
-        to_itrf = np.swapaxes(to_gcrs, 0, 1)
-        moved = displacements(
-            station,
-            sun_itrf_m=rotation.rotate(to_itrf, sun),
-            moon_itrf_m=rotation.rotate(to_itrf, moon),
-            tt1=tt1,
-            tt2=tt2,
-            ut1_fraction=ut1_fraction,
-            xp_arcsec=pole.xp_rad / ARCSECOND,
-            yp_arcsec=pole.yp_rad / ARCSECOND,
-            omit=self.omit,
+        to_gcrs = rotation.terrestrial_to_celestial(
+            x, y, s, era, state["xp"], state["yp"], tt1, tt2
         )
+        # -- from the ITRF to the GCRS --------------------------------------------------------
         years = station.years_since_epoch(tt1, tt2)
         itrf = column(station.xyz_m, years) + column(station.velocity_m_per_yr, years) * years
-        for displacement in moved.values():
+        for displacement in state.displacement.values():
             itrf = itrf + displacement
-        # -- GCRS -----------------------------------------------------------------------------
         gcrs = rotation.rotate(to_gcrs, itrf)
         axis = np.stack([x, y, np.sqrt(1.0 - x * x - y * y)])
         gcrs_velocity = EARTH_ROTATION_RATE * cross(axis, gcrs)
-        shifts = {name: rotation.rotate(to_gcrs, d) for name, d in moved.items()}
-        if "subdaily_rotation" not in self.omit:
-            turned = _turn(itrf, dx, dy, dut1 * EARTH_ROTATION_RATE)
+        shifts = {n: rotation.rotate(to_gcrs, d) for n, d in state.displacement.items()}
+        if "subdaily_rotation" not in omit:
+            turned = _turn(
+                itrf,
+                state["subdaily_xp"],
+                state["subdaily_yp"],
+                state["subdaily_ut1"] * EARTH_ROTATION_RATE,
+            )
             shifts["subdaily_rotation"] = rotation.rotate(to_gcrs, turned)
-        # -- BCRS -----------------------------------------------------------------------------
-        potential = self._potential(earth, moon, seconds)
-        position = earth + gcrs
-        if "station_contraction" not in self.omit:
-            contraction = -gcrs * (potential / c**2 + L_C) - earth_velocity * (
+        # -- from the GCRS to the BCRS --------------------------------------------------------
+        earth, earth_velocity = self.frame.earth(seconds)
+        if "station_contraction" in omit:
+            position = earth + gcrs
+        else:
+            contraction = -gcrs * (state["potential"] / c**2 + L_C) - earth_velocity * (
                 dot(earth_velocity, gcrs) / (2.0 * c**2)
             )
             shifts["station_contraction"] = contraction
             position = earth + (gcrs + contraction)
         ladder = {
             "tai1": tai1, "tai2": tai2, "tt1": tt1, "tt2": tt2, "ut1_1": tai1, "ut1_2": ut1_2,
-            "tdb_minus_tt_s": tdb_tt, "xp_rad": xp, "yp_rad": yp, "x_rad": x, "y_rad": y,
-            "s_rad": s, "era_rad": era, "itrf_m": itrf, "gcrs_m": gcrs,
-            "earth_velocity_m_per_s": earth_velocity, "potential_m2_per_s2": potential,
-            "sun_geocentric_m": sun, "moon_geocentric_m": moon,
+            "tdb_minus_tt_s": tdb_tt, "xp_rad": state["xp"], "yp_rad": state["yp"],
+            "x_rad": x, "y_rad": y, "s_rad": s, "era_rad": era, "itrf_m": itrf, "gcrs_m": gcrs,
+            "earth_velocity_m_per_s": earth_velocity,
+            "potential_m2_per_s2": state["potential"],
         }  # fmt: skip
         return StationEvent(
             seconds=seconds,
@@ -168,7 +149,7 @@ class StationMotion:
             velocity=earth_velocity + gcrs_velocity,
             earth=earth,
             earth_velocity=earth_velocity,
-            up=rotation.rotate(to_gcrs, column(tuple(station.up), seconds)),
+            up=rotation.rotate(to_gcrs, column(station.up, seconds)),
             axis=axis,
             tdb_minus_tt=tdb_tt,
             displacement=shifts,
@@ -193,22 +174,6 @@ class StationMotion:
             return PredictedEvent(seconds, earth + turned, earth_velocity + spin)
 
         return at
-
-    def _potential(self, earth: Array, moon: Array, seconds: Array) -> Array:
-        """Potential of Sun, Moon and planets at the geocentre, m^2/s^2."""
-        ephemeris = self.frame.ephemeris
-        total = ephemeris.gm("moon") / norm(moon)
-        for body in self.frame.distant_bodies:
-            position, _ = self.frame.distant(body, seconds)
-            total = total + ephemeris.gm(body) / norm(position - earth)
-        return total
-
-
-def day_fraction(jd1: Array, jd2: Array) -> Array:
-    """Fraction of the day, from midnight, of a Julian date in two parts."""
-    half = (jd1 - np.floor(jd1)) + 0.5
-    fraction: Array = np.mod(half + jd2, 1.0)
-    return fraction
 
 
 def _turn(r: Array, dxp: Array, dyp: Array, dera: Array) -> Array:

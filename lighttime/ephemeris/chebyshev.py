@@ -296,7 +296,8 @@ def _derivatives(coefficients: Array, order: int) -> Array:
             b[..., n - 1] = above + 2.0 * n * a[..., n]
         b[..., 0] *= 0.5
         series.append(b)
-    return np.concatenate(series, axis=-2)
+    stacked: Array = np.concatenate(series, axis=-2)
+    return stacked
 
 
 def _slopes(x: Array, terms: int) -> Array:
@@ -309,7 +310,8 @@ def _slopes(x: Array, terms: int) -> Array:
     for n in range(2, terms):
         u[n] = two_x * u[n - 1] - u[n - 2]
     degree = np.arange(terms, dtype=float).reshape(-1, *([1] * np.ndim(x)))
-    return u * degree
+    slopes: Array = u * degree
+    return slopes
 
 
 def _differences(x: Array, dx: Array, terms: int) -> Array:

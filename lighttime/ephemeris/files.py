@@ -119,7 +119,7 @@ def _opened(kind: Any, path: str) -> Any:
     from jplephem.daf import DAF
 
     try:
-        file = open(path, "rb")
+        file = open(path, "rb")  # noqa: SIM115 (the reader owns it)
     except OSError as error:
         raise FileError(path, None, f"cannot be read: {error.strerror}") from None
     try:

@@ -123,9 +123,7 @@ class EarthFrame:
 
     def moon_geocentric(self, seconds: Array) -> tuple[Array, Array]:
         """Moon minus Earth at an event: position (m) and velocity (m/s), (3, n)."""
-        return self._at(
-            seconds, lambda s: _taylor(self._moon, s), self.ephemeris.moon_geocentric
-        )
+        return self._at(seconds, lambda s: _taylor(self._moon, s), self.ephemeris.moon_geocentric)
 
     def libration(self, seconds: Array) -> tuple[Array, Array]:
         """Libration angles (rad) and their rates (rad/s) at an event, (3, n)."""

@@ -8,6 +8,7 @@ import erfa
 import numpy as np
 from numpy.typing import ArrayLike
 
+from lighttime.constants import DEGREE, J2000, JULIAN_CENTURY, TURN
 from lighttime.errors import InputError
 from lighttime.timescales.inputs import Place, Rotation, TwoPart, date_pair
 from lighttime.timescales.twopart import Array, Pair, add, divide, pair, plain, subtract
@@ -15,6 +16,59 @@ from lighttime.timescales.uniform import DAY_PAIR
 from lighttime.timescales.ut1 import ut1_day_fraction
 
 KILOMETRE = 1.0e3
+
+
+def topocentric(tdb1: ArrayLike, tdb2: ArrayLike, ut1_fraction: ArrayLike, xyz_m: ArrayLike) -> Any:
+    """What the place of a clock on the Earth adds to TDB - TT at the geocentre.
+
+    Parameters
+    ----------
+    tdb1, tdb2, ut1_fraction, xyz_m
+        As for `tdb_minus_tt`.
+
+    Returns
+    -------
+    float or array
+        Seconds, up to 2.1e-6: the place's velocity times the Earth's, over c^2, with its largest
+        perturbations.
+
+    Notes
+    -----
+    Source: Moyer 1981, Celest. Mech. 23, 33, as in IAU SOFA/ERFA, routine dtdb, whose sum with
+    these terms less that without them this is, to 1e-21 s.
+    """
+    x, y, z = np.asarray(xyz_m, dtype=np.float64)
+    u, v = np.hypot(x, y) / KILOMETRE, z / KILOMETRE
+    millennia = ((np.asarray(tdb1, dtype=np.float64) - J2000) + np.asarray(tdb2)) / (
+        10.0 * JULIAN_CENTURY
+    )
+    solar = TURN * np.asarray(ut1_fraction) + np.arctan2(y, x)  # local mean solar time
+    sun, anomaly, elongation, jupiter, saturn = (
+        DEGREE * np.fmod(at_j2000 + rate / 3600.0 * millennia, 360.0)
+        for at_j2000, rate in _ARGUMENTS
+    )
+    around_the_axis = (
+        3.17679 * np.sin(solar)
+        - 0.13677 * np.sin(solar + 2.0 * sun)
+        + 0.05312 * np.sin(solar - anomaly)
+        - 0.00229 * np.sin(solar + 2.0 * sun + anomaly)
+        + 0.00133 * (np.sin(solar + sun - jupiter) + np.sin(solar - elongation))
+        + 0.00100 * np.sin(solar - 2.0 * anomaly)
+        + 0.00029 * np.sin(solar + sun - saturn)
+    )
+    along_the_axis = -1.31840 * np.cos(sun) - 0.02200 * np.cos(sun + anomaly)
+    return 1.0e-10 * (u * around_the_axis + v * along_the_axis)
+
+
+_ARGUMENTS = (
+    (280.46645683, 1296027711.03429),
+    (357.52910918, 1295965810.481),
+    (297.85019547, 16029616012.090),
+    (34.35151874, 109306899.89453),
+    (50.07744430, 44046398.47038),
+)
+"""Mean longitude of the Sun, its anomaly, elongation of the Moon, longitudes of Jupiter and Saturn:
+degrees at J2000.0, and arcseconds per Julian millennium. Source: Simon et al. 1994."""
 
 
 def tdb_minus_tt(

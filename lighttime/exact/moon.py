@@ -11,7 +11,7 @@ from lighttime.exact.bodies import PLANETS, State, Tables
 from lighttime.exact.numbers import Context, Matrix, Real, Vector, decimal
 from lighttime.moon.tide import permanent_lunar_tide
 
-__all__ = ["ReflectorEvent", "Target"]
+__all__ = ["ReflectorEvent", "Target", "to_principal_axes"]
 
 C = 299792458
 H2, L2 = "0.0476", "0.0107"
@@ -65,7 +65,7 @@ class Target:
         earth, moon = self.ephemeris.earth_and_moon(tdb)
         sun = self.ephemeris.sun(tdb)
         angles = self.ephemeris.librations(tdb)
-        to_principal = _to_principal_axes(self.ctx, angles)
+        to_principal = to_principal_axes(self.ctx, angles)
         tide = self._tide(
             to_principal @ (earth.position - moon.position),
             to_principal @ (sun.position - moon.position),
@@ -135,7 +135,7 @@ class Target:
         return total
 
 
-def _to_principal_axes(ctx: Context, angles: Vector) -> Matrix:
+def to_principal_axes(ctx: Context, angles: Vector) -> Matrix:
     """Rz(psi) Rx(theta) Rz(phi). Source: Newhall & Williams 1997, Celest. Mech. 66, 21."""
     phi, theta, psi = angles
     return (

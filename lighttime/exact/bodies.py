@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import lru_cache
 from importlib.resources import as_file, files
 from typing import Any
@@ -10,6 +9,7 @@ from typing import Any
 import numpy as np
 
 from lighttime.exact.chebyshev import Records
+from lighttime.exact.gravity import Oblateness, State
 from lighttime.exact.numbers import Context, Real, Vector, context
 
 __all__ = ["BODIES", "PLANETS", "State", "Tables", "de421"]
@@ -28,14 +28,6 @@ _GM_NAMES = {
     "uranus": "GM7",
     "neptune": "GM8",
 }
-
-
-@dataclass(frozen=True, slots=True)
-class State:
-    """Barycentric position (m) and velocity (m/s), axes of the ICRS."""
-
-    position: Vector
-    velocity: Vector
 
 
 class Tables:
@@ -64,6 +56,11 @@ class Tables:
         both = unit * ctx.mpf(constants["GMB"])
         self.gm["moon"] = both / (1 + self.earth_moon_ratio)
         self.gm["earth"] = both - self.gm["moon"]
+
+    def figure_of_earth(self, axis: Vector) -> Oblateness:
+        """J2 of the Earth and its radius, with the axis as given."""
+        j2, radius = (self.ctx.mpf(self.constants[name]) for name in ("J2E", "AE"))
+        return Oblateness(j2, 1000 * radius, axis)
 
     def _from_records(self, name: str, tdb: Real) -> State:
         position, velocity = self.records[name].at(tdb)

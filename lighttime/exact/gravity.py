@@ -8,12 +8,19 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from lighttime.exact.bodies import State
 from lighttime.exact.numbers import Real, Vector
 
-__all__ = ["Oblateness", "Ray", "delay", "in_rest_frame", "oblate_delay"]
+__all__ = ["Oblateness", "Ray", "State", "delay", "in_rest_frame", "oblate_delay"]
 
 C = 299792458
+
+
+@dataclass(frozen=True, slots=True)
+class State:
+    """Barycentric position (m) and velocity (m/s), axes of the ICRS."""
+
+    position: Vector
+    velocity: Vector
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,12 +58,6 @@ class Oblateness:
     j2: Real
     radius: Real
     axis: Vector
-
-    @classmethod
-    def of_earth(cls, axis: Vector) -> Oblateness:
-        """The Earth's. Source: IERS Conventions (2010), TN36, table 1.1."""
-        ctx = axis.x.context
-        return cls(ctx.mpf("1.0826359e-3"), ctx.mpf("6378136.6"), axis)
 
 
 def in_rest_frame(ray: Ray) -> tuple[Vector, Vector]:

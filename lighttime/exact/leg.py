@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from lighttime.exact.bodies import BODIES, PLANETS, Tables
-from lighttime.exact.gravity import Oblateness, Ray, delay, oblate_delay
+from lighttime.exact.gravity import Ray, delay, oblate_delay
 from lighttime.exact.moon import ReflectorEvent
 from lighttime.exact.numbers import Real
 from lighttime.exact.station import Site, StationEvent
@@ -101,7 +101,7 @@ class Path:
             ray = Ray.past(station.bodies[name], station.bcrs, reflector.bcrs, after)
             delays[name] = delay(ray, self.ephemeris.gm[name], self.gamma)
             if name == "earth":
-                figure = Oblateness.of_earth(station.earth.cip)
+                figure = self.ephemeris.figure_of_earth(station.earth.cip)
                 oblateness = oblate_delay(ray, self.ephemeris.gm[name], self.gamma, figure)
                 delays[name] += oblateness
         return delays, oblateness

@@ -14,6 +14,11 @@ def dot(a: Array, b: Array) -> Array:
     return product
 
 
+def norm2(a: Array) -> Array:
+    """|a|^2"""
+    return dot(a, a)
+
+
 def norm(a: Array) -> Array:
     """|a|"""
     length: Array = np.sqrt(dot(a, a))

@@ -20,6 +20,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cache
 from itertools import pairwise
 from math import fsum
 
@@ -288,16 +289,24 @@ def _derivatives(coefficients: Array, order: int) -> Array:
     b_(n-1) = b_(n+1) + 2 n a_n, and half of that for b_0 (Abramowitz & Stegun 22.7 integrated).
     """
     series = [np.asarray(coefficients)]
+    slope = _slope_matrix(series[0].shape[-1])
     for _ in range(order):
-        a = series[-1]
-        b = np.zeros_like(a)
-        for n in range(a.shape[-1] - 1, 0, -1):
-            above = b[..., n + 1] if n + 1 < a.shape[-1] else 0.0
-            b[..., n - 1] = above + 2.0 * n * a[..., n]
-        b[..., 0] *= 0.5
-        series.append(b)
+        series.append(series[-1] @ slope)
     stacked: Array = np.concatenate(series, axis=-2)
     return stacked
+
+
+@cache
+def _slope_matrix(terms: int) -> Array:
+    """From the coefficients of a series to those of its derivative by x, from the right."""
+    matrix = np.zeros((terms, terms + 1))
+    for n in range(terms - 1, 0, -1):
+        matrix[n, n - 1] = 2.0 * n
+    for n in range(terms - 3, -1, -1):
+        matrix[:, n] += matrix[:, n + 2]
+    matrix[:, 0] *= 0.5
+    matrix.flags.writeable = False
+    return matrix[:, :terms]
 
 
 def _slopes(x: Array, terms: int) -> Array:

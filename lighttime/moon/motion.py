@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 
@@ -42,6 +43,15 @@ class ReflectorEvent:
     moon_velocity: Array
     displacement: Mapping[str, Array]
     ladder: Mapping[str, Array]
+
+
+@dataclass(frozen=True, eq=False)
+class RoughEvent:
+    """A reflector before it is known well; see `path.solver.Event`."""
+
+    seconds: Array
+    position: Array
+    velocity: Array
 
 
 @dataclass(frozen=True, eq=False)
@@ -98,6 +108,27 @@ class ReflectorMotion:
         }  # fmt: skip
         return ReflectorEvent(seconds, position, velocity, moon, moon_velocity, shifts, ladder)
 
+    def rough(self, seconds: Array) -> RoughEvent:
+        """The reflector without tide and contraction, turned on from the tagged instant.
+
+        Good to a metre; its rate is good enough to find the instant of the bounce to 1e-8 s.
+        """
+        r, turn = self._rough_start
+        frame = self.frame
+        earth, earth_velocity = frame.earth(seconds)
+        moon, moon_velocity = frame.moon_geocentric(seconds)
+        spin = cross(turn, r)
+        local = r + seconds * (spin + (0.5 * seconds) * cross(turn, spin))
+        velocity = earth_velocity + moon_velocity + spin
+        return RoughEvent(seconds, earth + moon + local, velocity)
+
+    @cached_property
+    def _rough_start(self) -> tuple[Array, Array]:
+        """Reflector from the Moon's centre, and the Moon's angular velocity, when tagged."""
+        angles, rates = self.frame.libration(np.zeros_like(self.frame.tdb2))
+        r = _from(principal_axes(angles), column(self.reflector.xyz_m, self.frame.tdb2))
+        return r, angular_velocity(angles, rates)
+
     def _tide(self, r: Array, earth: Array, sun: Array) -> Array:
         """Degree-2 tide in principal axes, less what the coordinates already contain."""
         gm = self.frame.ephemeris.gm
@@ -122,11 +153,10 @@ class ReflectorMotion:
 
 def _from(axes: Array, r: Array) -> Array:
     """Principal axes to ICRS."""
-    turned: Array = np.einsum("ij...,j...->i...", axes, r)
-    return turned
+    x, y, z = r
+    return np.stack([a[0] * x + a[1] * y + a[2] * z for a in axes])
 
 
 def _to(axes: Array, r: Array) -> Array:
     """ICRS to principal axes."""
-    turned: Array = np.einsum("ij...,i...->j...", axes, r)
-    return turned
+    return _from(axes.swapaxes(0, 1), r)

@@ -50,6 +50,7 @@ def gravity_delays(
     dict of str to ndarray, shape (n,)
     """
     later = far.seconds - near.seconds
+    distance = norm(far.position - near.position)
     delays: dict[str, Array] = {}
     for body in ("sun", "earth", "moon", *PLANETS):
         if GRAVITY_TERMS[body] in omit:
@@ -60,7 +61,7 @@ def gravity_delays(
         x1, x2 = near.position - position, far.position - position
         bending = solar_bending and body == "sun"
         gm = frame.ephemeris.gm(body)
-        delays[body] = moving_body(gm, x1, 0.0, x2, later, velocity, gamma, bending)
+        delays[body] = moving_body(gm, x1, 0.0, x2, later, velocity, gamma, bending, distance)
         if body == "earth":
             far_at_rest = in_rest_frame(x2, later, velocity)
             delays[body] += oblateness(gm * _j2_radius2(frame), x1, far_at_rest, _axis(near), gamma)

@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from lighttime.constants import SPEED_OF_LIGHT
-from lighttime.vectors import dot, norm
+from lighttime.vectors import dot, norm, norm2
 
 Array = NDArray[np.float64]
 
@@ -137,6 +137,7 @@ def moving_body(
     velocity: Array,
     gamma: float = 1.0,
     bending: bool = False,
+    distance: Array | None = None,
 ) -> Array:
     """Delay between two events by a body in uniform motion.
 
@@ -152,12 +153,29 @@ def moving_body(
         Velocity of the body, m/s.
     gamma, bending
         As in `shapiro`.
+    distance : array, shape (...), optional
+        Between the two events, m, where it is known already.
 
     Returns
     -------
     ndarray, shape (...)
         Delay in seconds of BCRS time.
+
+    Notes
+    -----
+    Only distances are needed in the rest frame, and an event is there at x + k beta, with k as
+    in `in_rest_frame`: |x + k beta|^2 = x^2 + 2 k beta.x + k^2 beta^2.
     """
-    at1, at2 = in_rest_frame(x1, t1, velocity), in_rest_frame(x2, t2, velocity)
-    r12 = norm(at2 - at1)
-    return shapiro(gm, norm(at1), norm(at2), r12, gamma, bending) * (r12 / norm(x2 - x1))
+    beta = velocity / c
+    beta2, along1, along2 = dot(beta, beta), dot(beta, x1), dot(beta, x2)
+    lorentz = 1.0 / np.sqrt(1.0 - beta2)
+    stretch = lorentz * lorentz / (1.0 + lorentz)
+    # in the rest frame an event is at x + k beta
+    k1 = stretch * along1 - lorentz * c * np.asarray(t1)
+    k2 = stretch * along2 - lorentz * c * np.asarray(t2)
+    k12 = k2 - k1
+    r1 = np.sqrt(dot(x1, x1) + k1 * (2.0 * along1 + k1 * beta2))
+    r2 = np.sqrt(dot(x2, x2) + k2 * (2.0 * along2 + k2 * beta2))
+    apart2 = norm2(x2 - x1) if distance is None else distance * distance
+    r12 = np.sqrt(apart2 + k12 * (2.0 * (along2 - along1) + k12 * beta2))
+    return shapiro(gm, r1, r2, r12, gamma, bending) * (r12 / np.sqrt(apart2))

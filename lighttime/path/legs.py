@@ -131,12 +131,14 @@ def solve_round_trip(
         down = solve_leg(departure, near.at, +1, guess, down_from_far)
         return Legs(_leg(up, True, True), _leg(down, True, False), tag)
     if tag == "transmit":
-        up = solve_leg(near.at(tagged), far.at, +1, guess_s, delays_up)
+        start = near.at(tagged)
+        up = solve_leg(start, far.at, +1, _rough(far, start, +1, guess_s), delays_up)
         departure = _after(far, up.found, turnaround_s)
         guess = _predict(near, up.known, departure, +1, up.seconds)
         down = solve_leg(departure, near.at, +1, guess, down_from_far)
         return Legs(_leg(up, False, True), _leg(down, True, False), tag)
-    down = solve_leg(near.at(tagged), far.at, -1, guess_s, delays_down)
+    stop = near.at(tagged)
+    down = solve_leg(stop, far.at, -1, _rough(far, stop, -1, guess_s), delays_down)
     arrival = _after(far, down.found, -turnaround_s)
     guess = _predict(near, down.known, arrival, -1, down.seconds)
     up = solve_leg(arrival, near.at, -1, guess, up_from_far)
@@ -162,6 +164,13 @@ def solve_one_way(
 
 def _after(far: End, event: Any, seconds: float) -> Any:
     return event if seconds == 0.0 else far.at(event.seconds + seconds)
+
+
+def _rough(far: Any, known: Any, sense: int, guess_s: float) -> Any:
+    """Light time to the far end as it is known roughly, if it knows itself so."""
+    if not hasattr(far, "rough"):
+        return guess_s
+    return solve_leg(known, far.rough, sense, guess_s).seconds
 
 
 def _predict(near: Any, known: Any, far_event: Any, sense: int, guess: Array) -> Array:

@@ -22,9 +22,9 @@ from lighttime.constants import SPEED_OF_LIGHT
 from lighttime.errors import ConvergenceError
 from lighttime.vectors import Array, dot, norm
 
-ACCEPTED_STEP_S = 1.0e-8
-"""A last step below this is taken along the velocity; what it neglects (the curvature of the
-motion, the change of the delays and of TDB-TT) stays below 1e-17 s."""
+ACCEPTED_STEP_S = 1.0e-7
+"""A last step below this is taken along the velocity; what it neglects (the change of TDB - TT,
+5e-10 of the step, that of the delays, and the curvature of the motion) stays below 1e-16 s."""
 
 MOST_ITERATIONS = 12
 

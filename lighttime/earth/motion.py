@@ -142,6 +142,8 @@ class StationMotion:
             "x_rad": x, "y_rad": y, "s_rad": s, "era_rad": era, "itrf_m": itrf, "gcrs_m": gcrs,
             "earth_velocity_m_per_s": earth_velocity,
             "potential_m2_per_s2": state["potential"],
+            "sun_geocentric_m": self.frame.distant("sun", seconds)[0] - earth,
+            "moon_geocentric_m": self.frame.moon_geocentric(seconds)[0],
         }  # fmt: skip
         return StationEvent(
             seconds=seconds,

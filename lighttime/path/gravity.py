@@ -125,7 +125,8 @@ def oblateness(
     first = n1 + n2
     second = (1.0 - n1 * n1) / r1 + (1.0 - n2 * n2) / r2
     bracket = r12 / e * ((r1 + r2) / e * first**2 - second)
-    return -(1.0 + gamma) * gm_j2_radius2 / (2.0 * c**3) * bracket
+    delay: Array = -(1.0 + gamma) * gm_j2_radius2 / (2.0 * c**3) * bracket
+    return delay
 
 
 def moving_body(
@@ -178,4 +179,5 @@ def moving_body(
     r2 = np.sqrt(dot(x2, x2) + k2 * (2.0 * along2 + k2 * beta2))
     apart2 = norm2(x2 - x1) if distance is None else distance * distance
     r12 = np.sqrt(apart2 + k12 * (2.0 * (along2 - along1) + k12 * beta2))
-    return shapiro(gm, r1, r2, r12, gamma, bending) * (r12 / np.sqrt(apart2))
+    delay: Array = shapiro(gm, r1, r2, r12, gamma, bending) * (r12 / np.sqrt(apart2))
+    return delay

@@ -13,6 +13,7 @@ STATION = (
     "ocean_loading",
     "ocean_pole_tide",
     "atmosphere_loading",
+    "residual_motion",
     "subdaily_rotation",
 )
 TERMS = (

@@ -470,7 +470,7 @@ def test_every_term_can_be_omitted(answer):
         legs = bare.uplink.geometry + bare.downlink.geometry
         assert abs(bare.seconds - legs) < 1e-38
     assert set(TERMS[1:]) - set(SIZES_M) == {
-        "ocean_loading", "ocean_pole_tide", "atmosphere_loading"
+        "ocean_loading", "ocean_pole_tide", "atmosphere_loading", "residual_motion"
     }  # fmt: skip
 
 

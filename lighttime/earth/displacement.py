@@ -5,8 +5,11 @@ from __future__ import annotations
 from collections.abc import Callable, Mapping
 from typing import TypeVar
 
+from numpy.typing import ArrayLike
+
 from lighttime.constants import J2000, JULIAN_YEAR
 from lighttime.earth import loading, tides
+from lighttime.earth.local import enu_to_itrf
 from lighttime.earth.station import Station
 from lighttime.vectors import Array
 
@@ -85,6 +88,37 @@ def displacements(
         ),
     }
     return {name: evaluate[name]() for name in modelled(station, omit)}
+
+
+def residual_motion(
+    station: Station, tt1: ArrayLike, tt2: ArrayLike, omit: frozenset[str] = frozenset()
+) -> dict[str, Array]:
+    """The displacement that the user supplied, by its name in the ITRF; empty if there is none.
+
+    It bends where the user's instants are and ends with them, and so is no part of
+    `displacements`, which are smooth from one midnight UTC to the next.
+
+    Parameters
+    ----------
+    station : Station
+    tt1, tt2 : array_like, shape (...)
+        The instant, TT.
+    omit : frozenset of str
+        Terms to leave out.
+
+    Returns
+    -------
+    dict of str to ndarray, shape (3, ...)
+
+    Raises
+    ------
+    CoverageError
+        If the supplied series does not reach an instant.
+    """
+    if station.residual_motion is None or "residual_motion" in omit:
+        return {}
+    enu = station.residual_motion.at(tt1, tt2)
+    return {"residual_motion": enu_to_itrf(enu, station.xyz_m)}
 
 
 T = TypeVar("T")

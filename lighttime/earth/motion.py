@@ -15,6 +15,7 @@ import numpy as np
 
 from lighttime.constants import DAY, EARTH_ROTATION_RATE, L_C, SPEED_OF_LIGHT, TT_MINUS_TAI
 from lighttime.earth import rotation
+from lighttime.earth.displacement import residual_motion
 from lighttime.earth.state import Plan, StateModel, StationState
 from lighttime.ephemeris.frame import EarthFrame
 from lighttime.vectors import Array, column, cross, dot
@@ -112,12 +113,13 @@ class StationMotion:
         # -- from the ITRF to the GCRS --------------------------------------------------------
         years = station.years_since_epoch(tt1, tt2)
         itrf = column(station.xyz_m, years) + column(station.velocity_m_per_yr, years) * years
-        for displacement in state.displacement.values():
+        moved = {**state.displacement, **residual_motion(station, tt1, tt2, omit)}
+        for displacement in moved.values():
             itrf = itrf + displacement
         gcrs = rotation.rotate(to_gcrs, itrf)
         axis = np.stack([x, y, np.sqrt(1.0 - x * x - y * y)])
         gcrs_velocity = EARTH_ROTATION_RATE * cross(axis, gcrs)
-        shifts = {n: rotation.rotate(to_gcrs, d) for n, d in state.displacement.items()}
+        shifts = {name: rotation.rotate(to_gcrs, d) for name, d in moved.items()}
         if "subdaily_rotation" not in omit:
             turned = _turn(
                 itrf,

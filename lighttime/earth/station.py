@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
-from typing import TYPE_CHECKING
+from os import PathLike
+from pathlib import Path
+from typing import TYPE_CHECKING, Any, Literal
 
 import numpy as np
 
@@ -15,6 +17,9 @@ from lighttime.vectors import Array
 
 if TYPE_CHECKING:
     from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
+    from lighttime.earth.residual_motion import ResidualMotion
+    from lighttime.earth.series import EarthOrientation
+    from lighttime.ephemeris import Ephemeris
 
 Triple = tuple[float, float, float]
 
@@ -40,6 +45,8 @@ class Station:
     ocean_loading, ocean_pole_tide, atmosphere_loading : optional
         Loading coefficients of this place. What is not given is *not modelled*, and every
         answer says so.
+    residual_motion : ResidualMotion, optional
+        What else moves this place, as a series of east, north and up.
     sigma_m : 3 floats, optional
         One-sigma of the position along x, y and z, metres, for error budgets.
     source : str
@@ -50,11 +57,19 @@ class Station:
     InputError
         If a number is not finite or the position is not within 100 km of the ellipsoid.
 
+    Notes
+    -----
+    The origin is the centre of mass of the whole Earth, oceans and air included, as it is that of
+    an ephemeris; coordinates in the ITRF refer to its mean over years. Ocean tides move it
+    against the ground by up to 1 cm: that motion is contained in ocean loading coefficients
+    whose `OceanLoading.centre_of_mass` is true, and missing otherwise. What seasons and weather
+    add, some millimetres, can be supplied as `residual_motion`.
+
     Examples
     --------
     >>> station = Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
     >>> [round(x) for x in station.xyz_m]
-    [4389842, 546779, 4582377]
+    [4389978, 546801, 4582330]
     >>> round(station.height_m, 6)
     2310.0
     """
@@ -66,6 +81,7 @@ class Station:
     ocean_loading: OceanLoading | None = None
     ocean_pole_tide: OceanPoleTide | None = None
     atmosphere_loading: AtmosphereLoading | None = None
+    residual_motion: ResidualMotion | None = None
     sigma_m: Triple | None = None
     source: str = ""
 
@@ -124,6 +140,83 @@ class Station:
         xyz = from_geodetic(latitude_deg * DEGREE, longitude_deg * DEGREE, height_m)
         return cls(name, _triple("xyz_m", xyz), **more)  # type: ignore[arg-type]
 
+    @staticmethod
+    def from_file(path: str | PathLike[str]) -> Station:
+        """A station from a station file (TOML): see `lighttime.earth.site_file`."""
+        from lighttime.earth.site_file import read_station
+
+        return read_station(path)
+
+    @staticmethod
+    def from_sinex(
+        path: str | PathLike[str],
+        site: str,
+        when: Any = None,
+        solution: str | int | None = None,
+        point: str | None = None,
+        eccentricity: bool = True,
+        discontinuities: str | PathLike[str] | None = None,
+        **more: Any,
+    ) -> Station:
+        """A station from a SINEX file, plain or gzip.
+
+        Parameters
+        ----------
+        path : path
+            To take several stations of a large file, read it once: `lighttime.read_sinex`.
+        site : str
+            Code of four characters, or DOMES number.
+        when : Epoch, str, ..., optional
+            An instant: of several solutions takes the one that holds then.
+        solution : str or int, optional
+            The solution by its number, to choose it whatever the instant. One of the two is
+            needed for a site that has several.
+        point : str, optional
+            Where a code has several points.
+        eccentricity : bool
+            Whether to add the vector from the marker to the reference point of the instrument.
+            `Station.source` says what was added.
+        discontinuities : path, optional
+            Another SINEX file with the block SOLUTION/DISCONTINUITY.
+        **more
+            The other fields of `Station`.
+
+        Raises
+        ------
+        FileError
+            If any part of the file is broken, with the line.
+        UnknownNameError
+            If the site is not in it (near names are given), or the solution or the point.
+        CoverageError
+            If no solution holds at `when`.
+        InputError
+            If what was asked leaves a choice open.
+        """
+        from lighttime.earth.sinex import read_sinex
+
+        file = read_sinex(path, discontinuities)
+        return file.station(site, when, solution, point, eccentricity, **more)
+
+    def with_blq(self, path: str | PathLike[str], site: str | None = None) -> Station:
+        """This station with its ocean loading coefficients from a BLQ file.
+
+        Parameters
+        ----------
+        path : path
+        site : str, optional
+            Its name in the file, when it is not `name`.
+        """
+        from lighttime.earth.blq import read_blq
+
+        name = self.name if site is None else site
+        return replace(self, ocean_loading=read_blq(Path(path), name))
+
+    def with_residual_motion(self, path: str | PathLike[str]) -> Station:
+        """This station with a residual motion from a CSV file: see `ResidualMotion.read`."""
+        from lighttime.earth.residual_motion import ResidualMotion
+
+        return replace(self, residual_motion=ResidualMotion.read(path))
+
     # -- geodetic coordinates ----------------------------------------------------------------
 
     @cached_property
@@ -173,6 +266,66 @@ class Station:
         """Julian years of TT since the epoch of the coordinates."""
         years: Array = ((tt1 - J2000) + tt2) / JULIAN_YEAR - (self.epoch - 2000.0)
         return years
+
+    def displacement(
+        self,
+        when: Any,
+        name: str,
+        frame: Literal["itrf", "enu"] = "itrf",
+        earth_orientation: EarthOrientation | None = None,
+        ephemeris: Ephemeris | None = None,
+    ) -> Array:
+        """One displacement alone, as it enters a range.
+
+        Parameters
+        ----------
+        when : Epoch, str, datetime, astropy Time, or an array or list of them
+        name : str
+            ``solid_earth_tide``, ``pole_tide``, ``ocean_loading``, ``ocean_pole_tide``,
+            ``atmosphere_loading`` or ``residual_motion``.
+        frame : {"itrf", "enu"}
+            Along the axes of the ITRF, or east, north and up of the GRS80 ellipsoid.
+        earth_orientation : EarthOrientation, optional
+            The bundled series if not given.
+        ephemeris : Ephemeris, optional
+            Of Sun and Moon; DE421 if not given.
+
+        Returns
+        -------
+        ndarray, shape (..., 3)
+            Metres, in the shape of `when`.
+
+        Raises
+        ------
+        UnknownNameError
+            For another name or frame.
+        InputError
+            If the station has no coefficients for it.
+        CoverageError
+            If the data in use do not reach an instant.
+
+        Examples
+        --------
+        >>> station = Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
+        >>> tide = station.displacement("2020-03-01T19:00:00", "solid_earth_tide", frame="enu")
+        >>> [round(1e3 * metres) for metres in tide.tolist()]
+        [-21, -26, 27]
+        """
+        from lighttime.earth.alone import displacement
+
+        return displacement(self, when, name, frame, earth_orientation, ephemeris)
+
+    def displacement_source(self, name: str) -> str:
+        """Where a displacement comes from: its model, and whose coefficients it uses.
+
+        Examples
+        --------
+        >>> Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0).displacement_source("pole_tide")
+        'IERS Conventions (2010), TN36, 7.1.4, secular pole of 2018'
+        """
+        from lighttime.earth.alone import source
+
+        return source(self, name)
 
 
 def _triple(field: str, value: object) -> Triple:

@@ -9,7 +9,7 @@ from typing import Any
 import numpy as np
 
 from lighttime.constants import GRS80_INVERSE_FLATTENING, L_C, WGS84_SEMI_MAJOR_AXIS
-from lighttime.earth.displacement import displacements
+from lighttime.earth.displacement import displacements, residual_motion
 from lighttime.earth.tides import solid_earth_tide
 from lighttime.exact.bodies import PLANETS, State, Tables
 from lighttime.exact.numbers import Context, Real, Vector, decimal, split_day
@@ -174,6 +174,8 @@ class Site:
         if "pole_tide" not in self.omit:
             moved["pole_tide"] = self._pole_tide(earth)
         moved.update(self._loading(earth, sun, moon))
+        for name, shift in residual_motion(self.station, tt1, tt2, frozenset(self.omit)).items():
+            moved[name] = Vector.of(ctx, shift)
         return moved
 
     def _pole_tide(self, earth: Orientation) -> Vector:

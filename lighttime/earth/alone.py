@@ -1,0 +1,110 @@
+"""One displacement of a station at a time, for people: arrays, where it comes from, its origin."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any, Final, Literal
+
+import numpy as np
+
+from lighttime.earth.celestial import celestial_series
+from lighttime.earth.displacement import DISPLACEMENTS, modelled, residual_motion
+from lighttime.earth.local import itrf_to_enu
+from lighttime.earth.series import EarthOrientation
+from lighttime.earth.state import StateModel
+from lighttime.earth.station import Station
+from lighttime.ephemeris import Ephemeris
+from lighttime.errors import InputError, UnknownNameError
+from lighttime.timescales import Epoch
+from lighttime.vectors import Array
+
+if TYPE_CHECKING:
+    from lighttime.earth.loading import OceanLoading
+
+NAMES: Final = (*DISPLACEMENTS, "residual_motion")
+FRAMES: Final = ("itrf", "enu")
+
+SOURCES: Final = {
+    "solid_earth_tide": "IERS Conventions (2010), TN36, 7.1.1, steps 1 and 2, tide-free",
+    "pole_tide": "IERS Conventions (2010), TN36, 7.1.4, secular pole of 2018",
+    "ocean_loading": "IERS Conventions (2010), TN36, 7.1.2, 11 constituents over 342 lines",
+    "ocean_pole_tide": "IERS Conventions (2010), TN36, 7.1.5",
+    "atmosphere_loading": "IERS Conventions (2010), TN36, 7.1.3, S1 and S2",
+    "residual_motion": "supplied by the user, linear between its instants",
+}
+"""The model of each displacement."""
+
+
+def has(station: Station, name: str) -> bool:
+    """Whether a station has what a displacement needs."""
+    if name not in NAMES:
+        raise UnknownNameError("name", name, NAMES)
+    if name == "residual_motion":
+        return station.residual_motion is not None
+    return name in modelled(station)
+
+
+def displacement(
+    station: Station,
+    when: Any,
+    name: str,
+    frame: Literal["itrf", "enu"] = "itrf",
+    earth_orientation: EarthOrientation | None = None,
+    ephemeris: Ephemeris | None = None,
+) -> Array:
+    """See `Station.displacement`."""
+    if not has(station, name):
+        allowed = f"given to the Station; without it {name} is not modelled"
+        raise InputError(name, None, allowed)
+    if frame not in FRAMES:
+        raise UnknownNameError("frame", frame, FRAMES)
+    series = EarthOrientation.bundled() if earth_orientation is None else earth_orientation
+    epoch = Epoch.parse(when)
+    tt = epoch.to("tt", place=station, earth_orientation=series)
+    tt1, tt2 = np.ravel(tt.jd1), np.ravel(tt.jd2)
+    if name == "residual_motion":
+        moved = residual_motion(station, tt1, tt2)[name]
+    elif not tt1.size:
+        moved = np.empty((3, 0))
+    else:
+        others = frozenset(DISPLACEMENTS).difference((name,))
+        bodies = Ephemeris.default() if ephemeris is None else ephemeris
+        states = StateModel(station, bodies, series, others, celestial_series())
+        moved = states.at(tt1, tt2, states.plan(tt1, tt2)).displacement[name]
+    if frame == "enu":
+        moved = itrf_to_enu(moved, station.xyz_m)
+    return moved.T.reshape(*epoch.shape, 3)
+
+
+def source(station: Station, name: str) -> str:
+    """See `Station.displacement_source`."""
+    if not has(station, name):
+        return f"{SOURCES[name]}; not modelled: nothing was given"
+    said = [SOURCES[name]]
+    given = getattr(station, name, None)
+    if given is not None:
+        what = "series" if name == "residual_motion" else "coefficients"
+        said.append(f"{what}: {given.source or 'their source was not given'}")
+    if name == "ocean_loading":
+        said.append(_ocean_tide_of_geocentre(station.ocean_loading))
+    return "; ".join(said)
+
+
+def geocentre(station: Station) -> tuple[str, ...]:
+    """What a station's place is reckoned from, and what moves that; a line for each fact."""
+    supplied = "" if station.residual_motion is None else ", but for what the residual motion has"
+    return (
+        "origin: the centre of mass of the whole Earth, as of the ephemeris; coordinates in the "
+        "ITRF refer to its mean over years",
+        f"its motion by ocean tides: {_ocean_tide_of_geocentre(station.ocean_loading)}",
+        f"its motion by seasons and weather, some millimetres: not modelled{supplied}",
+    )
+
+
+def _ocean_tide_of_geocentre(ocean: OceanLoading | None) -> str:
+    if ocean is None:
+        return "not modelled, up to 1 cm"
+    return {
+        True: "contained in the coefficients of ocean loading",
+        False: "not contained in the coefficients of ocean loading, up to 1 cm is missing",
+        None: "the coefficients of ocean loading do not say whether it is contained, up to 1 cm",
+    }[ocean.centre_of_mass]

@@ -6,7 +6,7 @@ from collections import OrderedDict
 from threading import Lock
 from typing import TYPE_CHECKING
 
-from lighttime.earth.celestial import celestial_series
+from lighttime.earth.celestial import SPAN_DAYS, celestial_series
 from lighttime.earth.state import SCALARS, StateModel
 from lighttime.earth.station import Station
 from lighttime.ephemeris.piecewise import PiecewiseSeries
@@ -40,7 +40,7 @@ class Tables:
             return states
 
     def __str__(self) -> str:
-        lines = [_told("precession-nutation and TDB-TT", "spans of 64 d", self.celestial)]
+        lines = [_told("precession-nutation and TDB-TT", f"spans of {SPAN_DAYS:g} d", self.celestial)]
         left = self.celestial.truncation
         if left is not None:
             lines.append(f"    left out: {max(left[:3]):.1e} rad, {left[3]:.1e} s")

@@ -90,7 +90,7 @@ class Model:
             if not np.isfinite(value):
                 raise InputError(name, value, "a finite number")
             put(self, name, float(value))
-        put(self, "_tables", Tables())
+        put(self, "_tables", Tables(self.ephemeris))
 
     def __reduce__(self) -> tuple[Any, ...]:
         return Model, tuple(getattr(self, f.name) for f in fields(self))  # without the tables
@@ -239,7 +239,11 @@ class Model:
             tdb_minus_tt = tagged["tdb_minus_tt"]
         else:
             tdb_minus_tt = self._tables.celestial.at(tt1, tt2, frozenset())[3]
-        frame = EarthFrame(self.ephemeris, tt1, tt2 + tdb_minus_tt / DAY)
+        if query.when.scale == "tdb":  # as it was given, to the last bit
+            tdb1, tdb2 = np.atleast_1d(query.when.jd1), np.atleast_1d(query.when.jd2)
+        else:
+            tdb1, tdb2 = tt1, tt2 + tdb_minus_tt / DAY
+        frame = EarthFrame(self.ephemeris, tdb1, tdb2)
 
         def end(thing: Any, name: str) -> Any:
             if isinstance(thing, Station):

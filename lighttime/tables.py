@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 from lighttime.earth.celestial import SPAN_DAYS, celestial_series
 from lighttime.earth.state import SCALARS, StateModel
 from lighttime.earth.station import Station
+from lighttime.ephemeris.bodies import Ephemeris
 from lighttime.ephemeris.piecewise import PiecewiseSeries
 
 if TYPE_CHECKING:
@@ -20,8 +21,8 @@ MOST_STATIONS = 16
 class Tables:
     """Series of precession-nutation and TDB, and of the state of each station that is used."""
 
-    def __init__(self) -> None:
-        self.celestial: PiecewiseSeries = celestial_series()
+    def __init__(self, ephemeris: Ephemeris) -> None:
+        self.celestial: PiecewiseSeries = celestial_series(ephemeris)
         self._stations: OrderedDict[Station, StateModel] = OrderedDict()
         self._lock = Lock()
 
@@ -40,7 +41,9 @@ class Tables:
             return states
 
     def __str__(self) -> str:
-        lines = [_told("precession-nutation and TDB-TT", f"spans of {SPAN_DAYS:g} d", self.celestial)]
+        lines = [
+            _told("precession-nutation and TDB-TT", f"spans of {SPAN_DAYS:g} d", self.celestial)
+        ]
         left = self.celestial.truncation
         if left is not None:
             lines.append(f"    left out: {max(left[:3]):.1e} rad, {left[3]:.1e} s")

@@ -6,15 +6,22 @@ from typing import TYPE_CHECKING, Any, Final, Literal
 
 import numpy as np
 
-from lighttime.earth.celestial import celestial_series
-from lighttime.earth.displacement import DISPLACEMENTS, modelled, residual_motion
+from lighttime.constants import ARCSECOND, DAY
+from lighttime.earth import rotation
+from lighttime.earth.displacement import (
+    DISPLACEMENTS,
+    displacements,
+    modelled,
+    residual_motion,
+)
 from lighttime.earth.local import itrf_to_enu
-from lighttime.earth.series import EarthOrientation
-from lighttime.earth.state import StateModel
+from lighttime.earth.series import EarthOrientation, PoleAndUT1
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.errors import InputError, UnknownNameError
 from lighttime.timescales import Epoch
+from lighttime.timescales.scales import tt_to_tai
+from lighttime.timescales.tdb import tdb_minus_tt
 from lighttime.vectors import Array
 
 if TYPE_CHECKING:
@@ -63,16 +70,52 @@ def displacement(
     tt1, tt2 = np.ravel(tt.jd1), np.ravel(tt.jd2)
     if name == "residual_motion":
         moved = residual_motion(station, tt1, tt2)[name]
-    elif not tt1.size:
-        moved = np.empty((3, 0))
     else:
-        others = frozenset(DISPLACEMENTS).difference((name,))
-        bodies = Ephemeris.default() if ephemeris is None else ephemeris
-        states = StateModel(station, bodies, series, others, celestial_series())
-        moved = states.at(tt1, tt2, states.plan(tt1, tt2)).displacement[name]
+        moved = _modelled(station, name, tt1, tt2, series, ephemeris)
     if frame == "enu":
         moved = itrf_to_enu(moved, station.xyz_m)
     return moved.T.reshape(*epoch.shape, 3)
+
+
+def _modelled(
+    station: Station,
+    name: str,
+    tt1: Array,
+    tt2: Array,
+    series: EarthOrientation,
+    ephemeris: Ephemeris | None,
+) -> Array:
+    """A displacement of the model, evaluated: ITRF, (3, n)."""
+    tai1, tai2 = tt_to_tai(tt1, tt2)
+    pole = series.at(tai1, tai2)
+    ut1_2 = tai2 + pole.ut1_tai_s / DAY
+    sun = moon = np.zeros((3, tt1.size))
+    if name == "solid_earth_tide":
+        to_itrf = rotation.transpose(_to_gcrs(tt1, tt2, tai1, ut1_2, pole))
+        bodies = Ephemeris.default() if ephemeris is None else ephemeris
+        tdb2 = tt2 + tdb_minus_tt(tt1, tt2) / DAY
+        earth, _ = bodies.earth(tt1, tdb2)
+        sun = rotation.rotate(to_itrf, bodies.barycentric_body("sun", tt1, tdb2)[0] - earth)
+        moon = rotation.rotate(to_itrf, bodies.moon_geocentric(tt1, tdb2)[0])
+    return displacements(
+        station,
+        sun_itrf_m=sun,
+        moon_itrf_m=moon,
+        tt1=tt1,
+        tt2=tt2,
+        ut1_fraction=np.mod((tai1 - np.floor(tai1)) + 0.5 + ut1_2, 1.0),
+        xp_arcsec=pole.xp_rad / ARCSECOND,
+        yp_arcsec=pole.yp_rad / ARCSECOND,
+        omit=frozenset(DISPLACEMENTS).difference((name,)),
+    )[name]
+
+
+def _to_gcrs(tt1: Array, tt2: Array, ut1_1: Array, ut1_2: Array, pole: PoleAndUT1) -> Array:
+    """From the ITRF, without sub-daily terms: they turn a tide by a nanometre."""
+    x, y, s = rotation.celestial_pole(tt1, tt2)
+    x, y = x + pole.dx_rad, y + pole.dy_rad
+    era = rotation.earth_rotation_angle(ut1_1, ut1_2)
+    return rotation.terrestrial_to_celestial(x, y, s, era, pole.xp_rad, pole.yp_rad, tt1, tt2)
 
 
 def source(station: Station, name: str) -> str:

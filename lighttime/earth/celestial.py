@@ -6,9 +6,10 @@ import numpy as np
 
 from lighttime.constants import DAY, DEGREE, J2000, MJD_ZERO
 from lighttime.earth import rotation
+from lighttime.ephemeris.bodies import PLANETS, Ephemeris
 from lighttime.ephemeris.piecewise import EqualSpans, PiecewiseSeries
 from lighttime.timescales.tdb import tdb_minus_tt
-from lighttime.vectors import Array
+from lighttime.vectors import Array, norm
 
 SPAN_DAYS = 128.0
 TERMS = 134
@@ -20,21 +21,35 @@ MOST_SPANS = 512
 """180 years."""
 
 
-def celestial(tt1: Array, tt2: Array) -> Array:
-    """X, Y, s of IAU 2006/2000A (rad) and TDB - TT at the geocentre (s).
+def celestial(ephemeris: Ephemeris, tt1: Array, tt2: Array) -> Array:
+    """What varies over days: precession-nutation, TDB - TT, potential.
 
     Parameters
     ----------
+    ephemeris : Ephemeris
+        For the potential.
     tt1, tt2 : ndarray, shape (n,)
         TT in two parts.
 
     Returns
     -------
-    ndarray, shape (4, n)
+    ndarray, shape (5, n)
+        X, Y, s of IAU 2006/2000A (rad), TDB - TT at the geocentre (s), potential of the Sun and
+        the planets at the geocentre (m^2/s^2).
     """
     x, y, s = rotation.celestial_pole(tt1, tt2)
     tdb2 = tt2 + _rough_tdb_minus_tt(tt1, tt2) / DAY
-    return np.stack([x, y, s, tdb_minus_tt(tt1, tdb2)])
+    potential = _potential(ephemeris, tt1, tdb2)
+    return np.stack([x, y, s, tdb_minus_tt(tt1, tdb2), potential])
+
+
+def _potential(ephemeris: Ephemeris, tdb1: Array, tdb2: Array) -> Array:
+    earth, _ = ephemeris.earth(tdb1, tdb2)
+    total = np.zeros_like(tdb2)
+    for body in ("sun", *(p for p in PLANETS if p in ephemeris.barycentric)):
+        position, _ = ephemeris.barycentric_body(body, tdb1, tdb2)
+        total += ephemeris.gm(body) / norm(position - earth)
+    return total
 
 
 def _rough_tdb_minus_tt(tt1: Array, tt2: Array) -> Array:
@@ -48,6 +63,10 @@ def _rough_tdb_minus_tt(tt1: Array, tt2: Array) -> Array:
     return rough
 
 
-def celestial_series() -> PiecewiseSeries:
+def celestial_series(ephemeris: Ephemeris) -> PiecewiseSeries:
     """`celestial`, to be asked often."""
-    return PiecewiseSeries(celestial, EqualSpans(MJD_ZERO, SPAN_DAYS), TERMS, MOST_SPANS)
+
+    def function(tt1: Array, tt2: Array) -> Array:
+        return celestial(ephemeris, tt1, tt2)
+
+    return PiecewiseSeries(function, EqualSpans(MJD_ZERO, SPAN_DAYS), TERMS, MOST_SPANS)

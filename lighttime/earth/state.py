@@ -18,7 +18,7 @@ from lighttime.earth.days import UtcDays
 from lighttime.earth.displacement import displacements, modelled
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
-from lighttime.ephemeris.bodies import PLANETS, Ephemeris
+from lighttime.ephemeris.bodies import Ephemeris
 from lighttime.ephemeris.piecewise import PiecewiseSeries
 from lighttime.timescales.scales import tt_to_tai
 from lighttime.timescales.tdb import topocentric
@@ -123,7 +123,7 @@ class StateModel:
         pole = self.earth_orientation.at(tai1, tai2)
         ut1_2 = tai2 + pole.ut1_tai_s / DAY
         fraction = day_fraction(tai1, ut1_2)
-        x, y, s, tdb_tt = self.celestial.at(tt1, tt2, spans)
+        x, y, s, tdb_tt, potential = self.celestial.at(tt1, tt2, spans)
         tdb_tt = tdb_tt + topocentric(tt1, tt2 + tdb_tt / DAY, fraction, self.station.xyz_m)
         if "subdaily_rotation" in self.omit:
             dx = dy = dut1 = np.zeros_like(tt2)
@@ -135,7 +135,8 @@ class StateModel:
         to_itrf = rotation.transpose(
             rotation.terrestrial_to_celestial(x, y, s, era, xp, yp, tt1, tt2)
         )
-        sun, moon, potential = self._bodies(tt1, tt2 + tdb_tt / DAY)
+        sun, moon = self._sun_and_moon(tt1, tt2 + tdb_tt / DAY)
+        potential = potential + self.ephemeris.gm("moon") / norm(moon)
         moved = displacements(
             self.station,
             sun_itrf_m=rotation.rotate(to_itrf, sun),
@@ -150,19 +151,13 @@ class StateModel:
         scalars = (x, y, s, tdb_tt, ut1_tai, xp, yp, dx, dy, dut1, potential)
         return np.concatenate([np.stack(scalars), *(moved[name] for name in self.names)])
 
-    def _bodies(self, tdb1: Array, tdb2: Array) -> tuple[Array, Array, Array]:
-        """Geocentric Sun and Moon, and the potential of all bodies at the geocentre."""
+    def _sun_and_moon(self, tdb1: Array, tdb2: Array) -> tuple[Array, Array]:
+        """Geocentric Sun and Moon."""
         ephemeris = self.ephemeris
         moon, _ = ephemeris.moon_geocentric(tdb1, tdb2)
-        earth = ephemeris.earth(tdb1, tdb2)[0]
-        potential = ephemeris.gm("moon") / norm(moon)
-        for body in ("sun", *(p for p in PLANETS if p in ephemeris.barycentric)):
-            records = ephemeris.barycentric[body]
-            position = records.value(records.locate(tdb1, tdb2)) - earth
-            potential = potential + ephemeris.gm(body) / norm(position)
-            if body == "sun":
-                sun = position
-        return sun, moon, potential
+        return ephemeris.barycentric_body("sun", tdb1, tdb2)[0] - ephemeris.earth(tdb1, tdb2)[
+            0
+        ], moon
 
 
 def day_fraction(jd1: Array, jd2: Array) -> Array:

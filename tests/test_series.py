@@ -267,6 +267,13 @@ def test_outside_coverage(bundled: EarthOrientation) -> None:
         bundled.sigmas(2473500.5, 0.0)
     with pytest.raises(InputError, match="finite"):
         bundled.at(np.nan, 0.0)
+    one_part = bundled.tai1[-1] + bundled.tai2[-1]
+    rest = (bundled.tai1[-1] - one_part) + bundled.tai2[-1]
+    assert (
+        bundled.at(one_part, rest).xp_rad == bundled.at(bundled.tai1[-1], bundled.tai2[-1]).xp_rad
+    )
+    with pytest.raises(CoverageError):
+        bundled.at(bundled.tai1[-1], bundled.tai2[-1] + 1e-12)
     last = bundled.at(bundled.tai1[-1], bundled.tai2[-1])
     assert float(last.xp_rad) == pytest.approx(bundled.xp_arcsec[-1] * ARCSECOND)
 

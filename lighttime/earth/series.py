@@ -27,15 +27,11 @@ Floats = NDArray[np.float64]
 BLOCK: Final = 512
 """Nodes whose zonal tides are computed together, when first asked for."""
 
+_ROUNDING: Final = 1e-15
+"""Days by which the first and last node may be missed, as dates in two parts are rounded."""
 
 _VALUES: Final = ("ut1_tai_s", "xp_arcsec", "yp_arcsec", "dx_mas", "dy_mas")
-_SIGMAS: Final = (
-    "sigma_ut1_s",
-    "sigma_xp_arcsec",
-    "sigma_yp_arcsec",
-    "sigma_dx_mas",
-    "sigma_dy_mas",
-)
+_SIGMAS: Final = ("sigma_ut1_s", *(f"sigma_{name}" for name in _VALUES[1:]))
 _UNITS: Final = (1.0, ARCSECOND, ARCSECOND, MILLIARCSECOND, MILLIARCSECOND)
 
 
@@ -115,8 +111,6 @@ class EarthOrientation:
                 own.flags.writeable = False
                 object.__setattr__(self, field.name, own)
 
-    # --- where series come from --------------------------------------------------------------
-
     @staticmethod
     def bundled() -> EarthOrientation:
         """IERS 20 C04, and finals2000A with its predictions after the last day of the C04.
@@ -193,8 +187,6 @@ class EarthOrientation:
             **nodes,
         )
 
-    # --- what it holds -----------------------------------------------------------------------
-
     @cached_property
     def tai1(self) -> Floats:
         """First part of the nodes' Julian dates in TAI: that of 0h UTC as a day number."""
@@ -224,8 +216,6 @@ class EarthOrientation:
     def ut1_tai_tide_free_s(self) -> Floats:
         """UT1 - TAI at the nodes without the zonal tides, s: what is interpolated."""
         return _read_only(self._tide_free(np.arange(self.mjd.size)))
-
-    # --- values ------------------------------------------------------------------------------
 
     def at(self, tai1: ArrayLike, tai2: ArrayLike) -> PoleAndUT1:
         """Pole and UT1 at some instants.
@@ -284,17 +274,17 @@ class EarthOrientation:
             )
         )
 
-    # --- how ---------------------------------------------------------------------------------
-
     def _interval(self, tai1: ArrayLike, tai2: ArrayLike) -> tuple[Any, Floats, Floats]:
-        """Node i before each instant, x in [0, 1] from it to the next, and their distance (s)."""
+        """Node i before each instant, x from it (0) to the next (1), and their distance (s)."""
         tai1, tai2 = np.broadcast_arrays(np.asarray(tai1, float), np.asarray(tai2, float))
-        days = (tai1 - self.tai1[0]) + tai2
-        nodes = self._days_of_nodes
-        outside = ~((days >= nodes[0]) & (days <= nodes[-1]))
+        since_first, since_last = (
+            (tai1 - self.tai1[end]) + (tai2 - self.tai2[end]) for end in (0, -1)
+        )
+        outside = ~((since_first >= -_ROUNDING) & (since_last <= _ROUNDING))
         if outside.any():
-            self._refuse(float(days[outside].flat[0]))
-        i = np.clip(np.searchsorted(nodes, days, side="right") - 1, 0, nodes.size - 2)
+            self._refuse(float(((tai1 - MJD_ZERO) + tai2)[outside].flat[0]))
+        nodes = self._days_of_nodes
+        i = np.clip(np.searchsorted(nodes, since_first, side="right") - 1, 0, nodes.size - 2)
         length = (self.tai1[i + 1] - self.tai1[i]) + (self.tai2[i + 1] - self.tai2[i])
         x = ((tai1 - self.tai1[i]) + (tai2 - self.tai2[i])) / length
         return i, x, DAY * length
@@ -314,11 +304,10 @@ class EarthOrientation:
         )
         return PoleAndUT1(ut1[()], *(value[()] for value in pole))
 
-    def _refuse(self, days: float) -> None:
-        mjd = days + self.mjd[0]
+    def _refuse(self, mjd: float) -> None:
         if not np.isfinite(mjd):
             raise InputError("tai1 + tai2", mjd, "a finite Julian date")
-        first, last = self._days_of_nodes[[0, -1]] + self.mjd[0]
+        first, last = ((self.tai1 - MJD_ZERO) + self.tai2)[[0, -1]]
         raise CoverageError(
             "epoch",
             f"{calendar(mjd)} (MJD {mjd:.6f} TAI)",
@@ -328,7 +317,7 @@ class EarthOrientation:
 
     @cached_property
     def _days_of_nodes(self) -> Floats:
-        days: Floats = (self.tai1 - self.tai1[0]) + self.tai2
+        days: Floats = (self.tai1 - self.tai1[0]) + (self.tai2 - self.tai2[0])
         return days
 
     @cached_property
@@ -359,8 +348,6 @@ class EarthOrientation:
             ut1_tai_s[()],
             *((unit * value * same)[()] for value, unit in zip(pole, _UNITS[1:], strict=True)),
         )
-
-    # --- as a value --------------------------------------------------------------------------
 
     @cached_property
     def _digest(self) -> bytes:

@@ -149,6 +149,15 @@ def ut1_libration(
     return dut1 * 1e-6, dlod * 1e-6
 
 
+@dataclass(frozen=True, eq=False)
+class Lines:
+    """A table of libration: multipliers (lines, 6), amplitudes (quantities, lines)."""
+
+    multipliers: Floats
+    sines: Floats
+    cosines: Floats
+
+
 def libration_sums(lines: Lines, arguments: Floats) -> Floats:
     """Sums of sines and cosines over the lines of a table.
 
@@ -166,15 +175,6 @@ def libration_sums(lines: Lines, arguments: Floats) -> Floats:
     angle = lines.multipliers @ arguments
     total: Floats = lines.sines @ np.sin(angle) + lines.cosines @ np.cos(angle)
     return total
-
-
-@dataclass(frozen=True, eq=False)
-class Lines:
-    """A table of libration: multipliers (lines, 6), amplitudes (quantities, lines)."""
-
-    multipliers: Floats
-    sines: Floats
-    cosines: Floats
 
 
 @cache

@@ -63,7 +63,7 @@ class Row:
         verdict = "MISS" if self.missed else ""
         surface = largest * MICROARCSECOND * EARTH_RADIUS_MM
         return (
-            f"{self.what:44s}{largest:13.5f}{rms:13.5f}{surface:12.2e}  {bar:6s}{verdict:5s}"
+            f"{self.what:44s}{largest:13.3g}{rms:13.3g}{surface:12.2e}  {bar:6s}{verdict:5s}"
             f"{self.why}"
         )
 

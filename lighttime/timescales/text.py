@@ -1,7 +1,8 @@
 """Calendar text in the form of ISO 8601, to and from Julian dates in two parts, exactly.
 
 Text is decimal and a Julian date in two float64 is binary: both are rational numbers, and are
-turned into each other as such, so that nothing is lost but the last rounding to 1e-21 s.
+turned into each other as such, in integers, so that nothing is lost but the last rounding to
+1e-21 s.
 """
 
 from __future__ import annotations
@@ -19,15 +20,14 @@ from lighttime.timescales.leapseconds import (
     MJD_OF_ORDINAL,
     utc_day_seconds,
 )
-from lighttime.timescales.twopart import split
 
 _PATTERN: Final = re.compile(
     r"(\d{4})-(\d{2})-(\d{2})"
-    r"(?:[T ](\d{2}):(\d{2})(?::(\d{2})(?:\.(\d+))?)?(Z|[+-]\d{2}:?\d{2})?)?",
+    r"(?:[T ](\d{2}):(\d{2})(?::(\d{2})(?:\.(\d{1,1000}))?)?(Z|[+-]\d{2}:?\d{2})?)?",
     re.ASCII,
 )
 _FORM: Final = "text like 2008-03-30T12:39:50.123"
-_HALF: Final = Fraction(MJD_ZERO)
+_TWICE_ZERO: Final = int(2 * MJD_ZERO)
 _PLAIN_DAY: Final = Fraction(86400)
 
 
@@ -69,13 +69,21 @@ def parse_iso(text: str, scale: str, name: str = "epoch") -> tuple[float, float]
         raise InputError(name, text, "hours 00 to 23")
     if minutes > 59:
         raise InputError(name, text, "minutes 00 to 59")
-    seconds = Fraction(int(whole or 0))
-    if decimals:
-        seconds += Fraction(int(decimals), 10 ** len(decimals))
+    unit = 10 ** len(decimals or "")
+    of_minute = int(whole or 0) * unit + int(decimals or 0)
     length = day_seconds(mjd, scale)
-    _check_second(text, name, seconds, (hours, minutes), length, scale)
-    of_day = (3600 * hours + 60 * minutes + seconds) / length
-    return split(_HALF + mjd + of_day)
+    if of_minute >= 59 * unit:  # no minute is shorter than that
+        _check_second(text, name, Fraction(of_minute, unit), (hours, minutes), length, scale)
+    ticks = (3600 * hours + 60 * minutes) * unit + of_minute
+    day, part = length.numerator * unit, length.denominator * ticks
+    return _nearest_and_rest((_TWICE_ZERO + 2 * mjd) * day + 2 * part, 2 * day)
+
+
+def _nearest_and_rest(numerator: int, denominator: int) -> tuple[float, float]:
+    """A rational number as the nearest float64 and the rest: Python divides integers exactly."""
+    high = numerator / denominator
+    n, d = high.as_integer_ratio()
+    return high, (numerator * d - n * denominator) / (denominator * d)
 
 
 def _mjd(text: str, name: str, year: int, month: int, day: int) -> int:
@@ -121,16 +129,26 @@ def _check_second(
 
 def format_iso(jd1: float, jd2: float, scale: str, digits: int) -> str:
     """Calendar text ``YYYY-MM-DDThh:mm:ss.fraction`` of a Julian date, rounded to `digits`."""
-    since_mjd_zero = Fraction(jd1) + Fraction(jd2) - _HALF
-    mjd = since_mjd_zero.__floor__()
+    (n1, d1), (n2, d2) = jd1.as_integer_ratio(), jd2.as_integer_ratio()
+    grid = max(d1, d2, 2)  # powers of two
+    since_mjd_zero = n1 * (grid // d1) + n2 * (grid // d2) - _TWICE_ZERO * (grid // 2)
+    mjd, rest = divmod(since_mjd_zero, grid)
     length = day_seconds(mjd, scale)
     unit = 10**digits
-    ticks = round((since_mjd_zero - mjd) * length * unit)
-    if ticks >= length * unit:  # rounded up to midnight, through the leap second if there is one
+    day = length.numerator * unit
+    ticks = _rounded(rest * day, grid * length.denominator)
+    if ticks * length.denominator >= day:
+        # rounded up to midnight, through the leap second if there is one
         mjd, ticks = mjd + 1, 0
     whole, decimals = divmod(ticks, unit)
     minutes = min(whole // 60, 24 * 60 - 1)
     hour, minute = divmod(minutes, 60)
-    day = date.fromordinal(mjd + MJD_OF_ORDINAL).isoformat()
+    calendar = date.fromordinal(mjd + MJD_OF_ORDINAL).isoformat()
     fraction = f".{decimals:0{digits}d}" if digits else ""
-    return f"{day}T{hour:02d}:{minute:02d}:{whole - 60 * minutes:02d}{fraction}"
+    return f"{calendar}T{hour:02d}:{minute:02d}:{whole - 60 * minutes:02d}{fraction}"
+
+
+def _rounded(numerator: int, denominator: int) -> int:
+    """The nearest integer to a rational number, the even one of two."""
+    whole, rest = divmod(numerator, denominator)
+    return whole + (2 * rest + (whole & 1) > denominator)

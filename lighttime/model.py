@@ -65,7 +65,7 @@ class Model:
     >>> model = lt.Model(omit=("planet_gravity",))
     >>> answer = model.round_trip("2020-03-01T19:00:00", hilltop, lt.reflector("Apollo 15"))
     >>> f"{answer.seconds:.6f}"
-    '2.594379'
+    '2.606622'
     """
 
     ephemeris: Ephemeris = None  # type: ignore[assignment]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from fractions import Fraction
+from typing import Any
 
 import mpmath
 import numpy as np
@@ -12,22 +13,23 @@ from lighttime.ephemeris import Ephemeris
 from lighttime.ephemeris.chebyshev import Records
 from lighttime.errors import CoverageError
 
-mpmath.mp.dps = 40
+mp = mpmath.MPContext()
+mp.dps = 40
 
 
-def exact(records: Records, jd1: float, jd2: float, seconds: float = 0.0) -> list[mpmath.mpf]:
+def exact(records: Records, jd1: float, jd2: float, seconds: float = 0.0) -> list[Any]:
     """The polynomials from exact dates, by the textbook recurrence."""
     days = Fraction(jd1) + Fraction(jd2) + Fraction(seconds) / 86400 - Fraction(records.start_jd)
     span = Fraction(records.span_days)
     index = min(int(days // span), len(records.coefficients) - 1)
     fraction = 2 * (days - index * span) / span - 1
-    x = mpmath.mpf(fraction.numerator) / fraction.denominator
+    x = mp.mpf(fraction.numerator) / fraction.denominator
     values = []
     for series in np.asarray(records.coefficients[index]):
-        terms = [mpmath.mpf(1), x]
+        terms = [mp.mpf(1), x]
         while len(terms) < len(series):
             terms.append(2 * x * terms[-1] - terms[-2])
-        values.append(sum(mpmath.mpf(float(a)) * t for a, t in zip(series, terms, strict=False)))
+        values.append(sum(mp.mpf(float(a)) * t for a, t in zip(series, terms, strict=False)))
     return [v * records.scale for v in values]
 
 
@@ -98,7 +100,7 @@ def test_rate_is_the_derivative(moon: Records) -> None:
     for n in range(20):
         later, earlier = exact(moon, jd1[n], jd2[n], 0.1), exact(moon, jd1[n], jd2[n], -0.1)
         for k in range(3):
-            quotient = (later[k] - earlier[k]) / (2 * mpmath.mpf(0.1))
+            quotient = (later[k] - earlier[k]) / (2 * mp.mpf(0.1))
             assert abs(float(rate[k, n] - quotient)) < 1.0e-10
 
 

@@ -17,8 +17,9 @@ LEVELS = (
     {"ephemeris"},
     {"earth", "moon"},
     {"path"},
-    {"query", "answer", "worksheet", "printing"},
-    {"model"},
+    {"tables", "query", "model", "answer", "worksheet", "printing", "partials", "uncertainty"},
+    {"crosscheck"},
+    {"progress", "commands", "cli", "__main__"},
 )
 EXCEPTION = ("timescales/ut1.py", "earth")
 """The series that UT1 comes from when none is given."""

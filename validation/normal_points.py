@@ -76,7 +76,9 @@ def main() -> int:
         answer = model.round_trip(when, STATION, array, weather=weather)
         residual = (measured - answer.seconds) * MM
         print(answer)
-        print(f"\n  measured {measured:.13f} s: observed minus computed {residual:+.1f} mm one-way\n")
+        print(
+            f"\n  measured {measured:.13f} s: observed minus computed {residual:+.1f} mm one-way\n"
+        )
         missed |= abs(residual) > BAR_MM
 
         def residual_of(other: lt.Model) -> float:
@@ -96,7 +98,8 @@ def main() -> int:
             moved = value - residual
             small = abs(moved) < LEAST_MM[name]
             missed |= small
-            print(f"  {name:28}{value:+12.1f} mm, moved by {moved:+10.1f}{'  TOO LITTLE' if small else ''}")
+            verdict = "  TOO LITTLE" if small else ""
+            print(f"  {name:28}{value:+12.1f} mm, moved by {moved:+10.1f}{verdict}")
         print()
     print("missed" if missed else "all within 1.0 m, and every effect shows")
     return int(missed)

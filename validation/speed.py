@@ -89,7 +89,9 @@ def stages(count: int, days: float) -> None:
     print(f"\nstages, {count} epochs over {days:g} days (cumulative, microseconds per epoch)")
     for stage, (file, function) in STAGES.items():
         spent = sum(
-            row[3] for (path, _, name), row in table.items() if path.endswith(file) and name == function
+            row[3]
+            for (path, _, name), row in table.items()
+            if path.endswith(file) and name == function
         )
         print(f"  {stage:24}{spent / count * 1e6:8.2f}")
     print("\n" + model.tables())
@@ -104,7 +106,9 @@ def fresh_process() -> None:
     )
     rows = []
     for _ in range(5):
-        done = subprocess.run([sys.executable, "-c", code], capture_output=True, check=True, text=True)
+        done = subprocess.run(
+            [sys.executable, "-c", code], capture_output=True, check=True, text=True
+        )
         rows.append([float(v) for v in done.stdout.split()])
     imported, answered = np.min(rows, axis=0)
     print(f"\nfresh process: import {imported:.3f} s, first answer {answered:.3f} s (best of 5)")
@@ -114,7 +118,8 @@ def main() -> int:
     quick = "--quick" in sys.argv
     counts = [1, 100, 10_000, 100_000] + ([] if quick else [1_000_000])
     missed: list[str] = []
-    print(f"{'span':12}{'epochs':>10}{'s':>10}{'us/epoch':>10}{'per second':>12}{'plain':>12}{'ratio':>8}")
+    heads = ("epochs", "s", "us/epoch", "per second", "plain", "ratio")
+    print(f"{'span':12}" + "".join(f"{h:>12}" for h in heads))
     per_epoch: dict[tuple[str, int], float] = {}
     for name, days in SPANS_DAYS.items():
         sizes = [20_000] if name == "50 years" else counts
@@ -122,10 +127,11 @@ def main() -> int:
             ours = seconds(count, days, 1 if count >= 1_000_000 else 3)
             plain = plain_seconds(count, days)
             per_epoch[name, count] = ours / count
-            print(
-                f"{name:12}{count:>10}{ours:>10.3f}{ours / count * 1e6:>10.2f}{count / ours:>12.0f}"
-                f"{count / plain:>12.0f}{plain / ours:>8.1f}"
-            )
+            figures = (
+                f"{ours:.3f}", f"{ours / count * 1e6:.2f}", f"{count / ours:.0f}",
+                f"{count / plain:.0f}", f"{plain / ours:.1f}",
+            )  # fmt: skip
+            print(f"{name:12}{count:>12}" + "".join(f"{f:>12}" for f in figures))
             if (name, count) == ("a year", 100_000):
                 if count / ours < 100_000:
                     missed.append("100,000 round trips per second")
@@ -136,7 +142,9 @@ def main() -> int:
     if not quick:
         growth = per_epoch["a year", 1_000_000] / per_epoch["a year", 100_000]
         peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024.0
-        print(f"\ntime per epoch at 10^6 over that at 10^5: {growth:.2f}; peak memory {peak:.0f} MB")
+        print(
+            f"\ntime per epoch at 10^6 over that at 10^5: {growth:.2f}; peak memory {peak:.0f} MB"
+        )
         if growth > 1.2:
             missed.append("time per epoch does not grow")
         if peak > 1000.0:

@@ -68,6 +68,12 @@ def read_with_tt(model: lt.Model, when: str) -> lt.Ephemeris:
     )
 
 
+def residual_mm(model: lt.Model, when: str, measured: float, weather: lt.Weather) -> float:
+    """Observed minus computed, mm one-way."""
+    answer = model.round_trip(when, STATION, lt.reflector("Apollo 15"), weather=weather)
+    return (measured - answer.seconds) * MM
+
+
 def main() -> int:
     model = lt.Model()
     array = lt.reflector("Apollo 15")
@@ -81,20 +87,16 @@ def main() -> int:
         )
         missed |= abs(residual) > BAR_MM
 
-        def residual_of(other: lt.Model) -> float:
-            other_answer = other.round_trip(when, STATION, array, weather=weather)
-            return (measured - other_answer.seconds) * MM
-
-        changes = {
-            "without the Sun's gravity": residual_of(lt.Model(omit="sun_gravity")),
-            "without the troposphere": residual_of(lt.Model(omit="troposphere")),
-            "without the lunar tide": residual_of(lt.Model(omit="lunar_tide")),
-            "without polar motion": residual_of(
-                lt.Model(earth_orientation=still_pole(model.earth_orientation))
-            ),
-            "TT in place of TDB": residual_of(lt.Model(ephemeris=read_with_tt(model, when))),
+        pole_at_zero = still_pole(model.earth_orientation)
+        others = {
+            "without the Sun's gravity": lt.Model(omit="sun_gravity"),
+            "without the troposphere": lt.Model(omit="troposphere"),
+            "without the lunar tide": lt.Model(omit="lunar_tide"),
+            "without polar motion": lt.Model(earth_orientation=pole_at_zero),
+            "TT in place of TDB": lt.Model(ephemeris=read_with_tt(model, when)),
         }
-        for name, value in changes.items():
+        for name, other in others.items():
+            value = residual_mm(other, when, measured, weather)
             moved = value - residual
             small = abs(moved) < LEAST_MM[name]
             missed |= small

@@ -293,7 +293,7 @@ def _orientation_notes(series: EarthOrientation, when: Epoch) -> list[str]:
         return [f"Earth orientation {series.name}: the same at every instant"]
     first, last = (_day(MJD_ZERO + mjd) for mjd in series.coverage)
     lines = [f"Earth orientation {series.name}: {first} to {last}"]
-    latest = float(np.max(when.to("utc").jd1)) - MJD_ZERO
+    latest = float(np.max(when.to("utc").jd1, initial=-np.inf)) - MJD_ZERO
     if latest > series.last_measured_mjd:
         measured = _day(MJD_ZERO + series.last_measured_mjd)
         lines.append(f"pole and UT1 are predicted: the last measured day is {measured}")

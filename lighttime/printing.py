@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from lighttime.constants import SPEED_OF_LIGHT
+from lighttime.timescales import Epoch
 
 if TYPE_CHECKING:
     from lighttime.answer import Answer, OneWay, RoundTrip
@@ -73,9 +74,13 @@ def _name(answer: Answer, end: str) -> str:
 
 def _elevations(*legs: tuple[str, Any]) -> list[str]:
     seen = [
-        f"{name} {leg.elevation_deg:.4f}" for name, leg in legs if leg.elevation_deg is not None
+        f"{name} {leg.elevation_deg:.4f}".lstrip()
+        for name, leg in legs
+        if leg.elevation_deg is not None
     ]
-    return [f"  elevation {', '.join(seen)} deg"] if seen else []
+    below = any(leg.elevation_deg is not None and leg.elevation_deg < 0.0 for _, leg in legs)
+    where = ": below the horizon" if below else ""
+    return [f"  elevation {', '.join(seen)} deg{where}"] if seen else []
 
 
 def _term_rows(answer: Answer, two_way: bool) -> list[str]:
@@ -101,22 +106,35 @@ def _closing(answer: Answer) -> list[str]:
 
 
 def _many(answer: Answer, title: str) -> str:
-    seconds = np.ravel(answer.seconds)
-    when = answer.query.when
-    lines = [f"{title}, {seconds.size} epochs {answer.query.shape}, {answer.query.tag}"]
-    shown = np.arange(seconds.size)
-    if seconds.size > MOST_ROWS:
+    size, shape = answer.query.size, answer.query.shape
+    grid = f" {shape}" if len(shape) > 1 else ""
+    lines = [f"{title}, {size} epochs{grid}, {answer.query.tag}", *_rows(answer)]
+    if size:
+        lines += ["", f"  {'term':24}{'least, ps':>24}{'most, ps':>24}", RULE]
+    for name, values in answer.terms.items() if size else ():
+        least, most = float(np.min(values)) * 1e12, float(np.max(values)) * 1e12
+        lines.append(f"  {name:24}{least:>24,.3f}{most:>24,.3f}".replace(",", " "))
+    return "\n".join([*lines, *_closing(answer)])
+
+
+def _rows(answer: Answer) -> list[str]:
+    """Epoch, light time and elevation of the first epochs and the last."""
+    size, when = answer.query.size, answer.query.when
+    shown = np.arange(size)
+    if size > MOST_ROWS:
         shown = np.concatenate([shown[: MOST_ROWS // 2], shown[-MOST_ROWS // 2 :]])
-    flat = np.ravel(when.isoformat(6))
-    for k, index in enumerate(shown):
-        if seconds.size > MOST_ROWS and k == MOST_ROWS // 2:
-            lines.append("  ...")
-        lines.append(f"  {flat[index]} {when.scale.upper()}   {spaced(float(seconds[index]))} s")
-    ranges = [
-        f"  {name:24}{float(np.min(v)) * 1e12:>24,.3f}{float(np.max(v)) * 1e12:>24,.3f}"
-        for name, v in answer.terms.items()
+    jd1, jd2, seconds = (np.ravel(v)[shown] for v in (when.jd1, when.jd2, answer.seconds))
+    epochs = Epoch(jd1, jd2, when.scale).isoformat(6).tolist()
+    lines = [
+        f"  {epoch} {when.scale.upper()}   {spaced(light_time)} s"
+        for epoch, light_time in zip(epochs, seconds.tolist(), strict=True)
     ]
-    head = f"  {'term':24}{'least, ps':>24}{'most, ps':>24}"
-    return "\n".join(
-        [*lines, "", head, RULE, *(r.replace(",", " ") for r in ranges), *_closing(answer)]
-    )
+    leg: Any = getattr(answer, "uplink", None) or getattr(answer, "leg", None)
+    if leg.elevation_deg is not None:
+        angles = np.ravel(leg.elevation_deg)[shown].tolist()
+        lines = [
+            f"{row}   elevation {deg:8.3f} deg" for row, deg in zip(lines, angles, strict=True)
+        ]
+    if size > MOST_ROWS:
+        lines.insert(MOST_ROWS // 2, "  ...")
+    return lines

@@ -131,11 +131,10 @@ def write_json(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -
 
 def write_csv(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -> None:
     """The names of the columns and a line for each range."""
-    write = csv.writer(file, lineterminator="\n").writerow
-    write(flat_columns(outline))
+    write = csv.writer(file, lineterminator="\n")
+    write.writerow(flat_columns(outline))
     for answer in answers:
-        for row in _rows(flat_columns(answer)):
-            write(row.values())
+        write.writerows(zip(*flat_columns(answer).values(), strict=True))
 
 
 def write_ecsv(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -> None:
@@ -151,11 +150,10 @@ def write_ecsv(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -
         said = f"unit: {unit}, " if unit else ""
         file.write(f"# - {{name: {_bare(name, unit)}, {said}datatype: {kind}}}\n")
     file.write(f"# meta: {meta}\n# schema: astropy-2.0\n")
-    write = csv.writer(file, lineterminator="\n").writerow
-    write([_bare(name, unit) for name, unit in names.items()])
+    write = csv.writer(file, lineterminator="\n")
+    write.writerow([_bare(name, unit) for name, unit in names.items()])
     for answer in answers:
-        for row in _rows(flat_columns(answer)):
-            write(row.values())
+        write.writerows(zip(*flat_columns(answer).values(), strict=True))
 
 
 FORMATS: Final = {".csv": write_csv, ".ecsv": write_ecsv, ".json": write_json}

@@ -21,6 +21,9 @@ __all__ = [
     "UnknownNameError",
 ]
 
+MOST_NAMES = 40
+"""So many known names are told; of more only the first."""
+
 
 class LighttimeError(Exception):
     """The root of all errors raised on purpose by this library."""
@@ -71,7 +74,10 @@ class UnknownNameError(InputError, LookupError):
         self.known = tuple(known)
         near = difflib.get_close_matches(str(value), self.known, n=3, cutoff=0.5)
         hint = f"did you mean {' or '.join(near)}? " if near else ""
-        InputError.__init__(self, name, value, f"{hint}one of {', '.join(self.known)}")
+        names = self.known
+        if len(names) > MOST_NAMES:
+            names = (*names[:10], f"... ({len(names)} in all)")
+        InputError.__init__(self, name, value, f"{hint}one of {', '.join(names)}")
 
     def __reduce__(self) -> tuple[Any, ...]:
         return type(self), (self.name, self.value, self.known)

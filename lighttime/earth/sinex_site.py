@@ -138,9 +138,7 @@ class SinexSite:
         """The station in one of its solutions: see `Station.from_sinex`."""
         mjd = None if when is None else _mjd(when)
         found = self._choose(mjd, solution)
-        said = [f"{Path(self.path).name}: {self.code} {self.point}, solution {found}"]
-        if self.domes.strip("- "):
-            said[0] = said[0].replace(",", f" {self.domes},", 1)
+        said = [f"{Path(self.path).name}: {self}, solution {found}"]
         xyz = found.xyz_m
         chosen = self._eccentricity(found, mjd) if eccentricity else None
         if chosen is not None:
@@ -155,15 +153,17 @@ class SinexSite:
             said.append("no velocity in the file")
         if self.post_seismic:
             said.append("post-seismic terms of the file not applied")
-        return Station(
-            more.pop("name", self.name),
-            xyz,
-            found.velocity_m_per_yr or (0.0, 0.0, 0.0),
-            found.reference_year,
-            sigma_m=found.sigma_m,
-            source="; ".join(said),
-            **more,
-        )
+        fields: dict[str, Any] = {
+            "name": self.name,
+            "velocity_m_per_yr": found.velocity_m_per_yr or (0.0, 0.0, 0.0),
+            "epoch": found.reference_year,
+            "sigma_m": found.sigma_m,
+            "source": "; ".join(said),
+        }
+        return Station(xyz_m=xyz, **(fields | more))
+
+    def __str__(self) -> str:
+        return " ".join(filter(None, (self.code, self.point, self.domes.strip("- "))))
 
     def _choose(self, mjd: float | None, solution: str | int | None) -> SinexSolution:
         known = ", ".join(map(str, self.solutions))

@@ -17,6 +17,7 @@ from contextlib import ExitStack
 from datetime import date
 from functools import lru_cache, partial
 from io import BufferedReader
+from operator import itemgetter
 from pathlib import Path
 from typing import Final
 
@@ -31,7 +32,6 @@ FOOTER: Final = "%ENDSNX"
 _MJD_OF_ORDINAL = 678576  # MJD 0 is the day 678576 of Python's calendar
 _GZIP, _COMPRESS = b"\x1f\x8b", b"\x1f\x9d"
 _NUMBER = re.compile(r"[+-]?(\d+\.?\d*|\.\d+)([EeDd][+-]?\d+)?")
-_EXPONENT = str.maketrans("Dd", "EE")
 _TIME = re.compile(r"(\d\d):(\d\d\d):(\d\d\d\d\d)")
 
 
@@ -133,6 +133,26 @@ def _lines(path: Path) -> Iterator[tuple[int, bytes]]:
         raise FileError(path, number or None, reason) from error
 
 
+class Layout:
+    """How the lines of a block look.
+
+    Parameters
+    ----------
+    blanks : tuple of int
+        Columns (from 0) that part the fields and are blank.
+    least, most : int
+        Length of the line: a cut or a shift changes it.
+    """
+
+    def __init__(self, blanks: tuple[int, ...], least: int, most: int) -> None:
+        self.least, self.most = least, most
+        self._parting, self._blank = itemgetter(*blanks), (" ",) * len(blanks)
+
+    def fits(self, text: str) -> bool:
+        """Whether a line looks so."""
+        return self.least <= len(text) <= self.most and self._parting(text) == self._blank
+
+
 class Columns:
     """One line of data, of which columns are asked for as the format counts them.
 
@@ -140,19 +160,15 @@ class Columns:
     ----------
     path, line, text
         Where it stands, and what it says.
-    blanks : str
-        Columns (from 0) that part the fields and must be blank.
-    width : int
-        Length of the line: a cut or a shift changes it.
+    layout : Layout
+        FileError if the line does not have it.
     """
 
     __slots__ = ("line", "path", "text")
 
-    def __init__(
-        self, path: Path, line: int, text: str, blanks: tuple[int, ...], width: int
-    ) -> None:
+    def __init__(self, path: Path, line: int, text: str, layout: Layout) -> None:
         self.path, self.line, self.text = path, line, text
-        if len(text) < width or any(text[k] != " " for k in blanks):
+        if not layout.fits(text):
             raise self.error(f"{text.strip()!r} does not have the columns of its block")
 
     def error(self, reason: str) -> FileError:
@@ -167,7 +183,9 @@ class Columns:
         """A number that ends at the last of its columns."""
         text = self.text[first:last]
         found = text.lstrip()
-        value = float(found.translate(_EXPONENT)) if _NUMBER.fullmatch(found) else math.nan
+        value = math.nan
+        if _NUMBER.fullmatch(found):
+            value = float(found.replace("D", "E").replace("d", "E"))
         if not math.isfinite(value):
             raise self.error(f"{text.strip()!r} is no number in columns {first + 1} to {last}")
         return value

@@ -21,7 +21,7 @@ Array = NDArray[np.float64]
 KILOMETRE = 1000.0
 
 _PLANET_NUMBER = {"mercury": 1, "venus": 2, "mars": 4, "jupiter": 5, "saturn": 6, "uranus": 7}
-_PLANET_NUMBER["neptune"] = 8
+_PLANET_NUMBER |= {"neptune": 8, "pluto": 9}
 _SUN, _EMB, _EARTH, _MOON = 10, 3, 399, 301
 
 TWO_PI = (2.0 * np.pi, 2.4492935982947064e-16)
@@ -61,7 +61,7 @@ def de421() -> Ephemeris:
         name="DE421",
         barycentric=MappingProxyType(
             {"earth_moon_barycentre": records("earthmoon"), "sun": records("sun")}
-            | {planet: records(planet) for planet in PLANETS}
+            | {planet: records(planet) for planet in (*PLANETS, "pluto")}
         ),
         moon_from_earth=records("moon"),
         earth_from_barycentre=-1.0 / (1.0 + emrat),

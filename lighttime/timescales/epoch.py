@@ -13,6 +13,7 @@ from lighttime.errors import InputError
 from lighttime.timescales import twopart
 from lighttime.timescales.inputs import Place, Rotation
 from lighttime.timescales.leapseconds import utc_days
+from lighttime.timescales.relation import Choice
 from lighttime.timescales.scales import UNIFORM, convert, known_scale
 from lighttime.timescales.text import format_iso
 from lighttime.timescales.uniform import DAY_PAIR
@@ -35,7 +36,7 @@ class Epoch:
         float64 nearest to it and the rest: a grid of about 1e-21 s. For UTC it is ERFA's
         quasi-Julian date, of which a day with a leap second takes one unit, as any other day.
     scale : str
-        ``utc``, ``tai``, ``tt``, ``tdb``, ``ut1``, ``tcg``, ``tcb``, ``gps`` or ``gst``.
+        ``utc``, ``tai``, ``tt``, ``tdb``, ``ut1``, ``tcg``, ``tcb``, ``gps``, ``gst`` or ``tcl``.
 
     Attributes
     ----------
@@ -139,6 +140,7 @@ class Epoch:
         scale: str,
         place: Place | None = None,
         earth_orientation: Rotation | None = None,
+        tdb: Choice = None,
     ) -> Epoch:
         """The same instants in another scale.
 
@@ -152,11 +154,15 @@ class Epoch:
         earth_orientation : EarthOrientation, optional
             Gives UT1, for conversions to and from ``ut1`` and, with a place, between TT and
             TDB; the bundled series when not given. Sub-daily terms are not part of this UT1.
+        tdb : {"series", "integrated"} or TimeEphemeris, optional
+            What TDB - TT is from: the series of Fairhead & Bretagnon when not given, the orbits
+            of DE421, or those of the ephemeris of a `TimeEphemeris`. TCL, here at the centre of
+            the Moon, is known by integration only, and needs one of the latter two.
         """
         target = known_scale(scale)
         if target == self.scale:
             return self
-        date = convert(self.jd1, self.jd2, self.scale, target, place, earth_orientation)
+        date = convert(self.jd1, self.jd2, self.scale, target, place, earth_orientation, tdb)
         return Epoch(*date, target)
 
     def shift(

@@ -29,6 +29,16 @@ class Rotation(Protocol):
         """An object with the attribute `ut1_tai_s` at an instant of TAI."""
 
 
+class Relation(Protocol):
+    """Anything that knows TDB - TT and TCB - TCL: a `TimeEphemeris`."""
+
+    def tdb_minus_tt(self, tdb1: Any, tdb2: Any, ut1_fraction: Any = 0.0, xyz_m: Any = None) -> Any:
+        """TDB - TT at a place on the Earth, s."""
+
+    def tcb_minus_tcl_periodic(self, tdb1: Any, tdb2: Any) -> Any:
+        """TCB - TCL at the centre of the Moon, less its mean rate, s."""
+
+
 def date_pair(name: str, jd1: ArrayLike, jd2: ArrayLike) -> Pair:
     """A Julian date handed in, as a pair; refused when not finite or of two shapes."""
     if not (np.all(np.isfinite(jd1)) and np.all(np.isfinite(jd2))):

@@ -1,8 +1,8 @@
 """From one time scale to another.
 
-    ut1 - tai - tt - tdb - tcb          gps, gst: system times of the GPS and Galileo satellites,
+    ut1 - tai - tt - tdb - tcb - tcl    gps, gst: system times of the GPS and Galileo satellites,
            |     |                      constant offsets of TAI
-      utc, gps  tcg
+      utc, gps  tcg                     tcl: of the Moon, known by integration only
           gst
 
 Each function takes and returns a Julian date in two parts (scalars or arrays of any
@@ -25,6 +25,8 @@ from numpy.typing import ArrayLike
 
 from lighttime.errors import UnknownNameError
 from lighttime.timescales.inputs import Place, Rotation, TwoPart, date_pair
+from lighttime.timescales.relation import Choice, chosen
+from lighttime.timescales.tcl import tcb_to_tcl, tcl_to_tcb
 from lighttime.timescales.tdb import tdb_to_tt, tt_to_tdb
 from lighttime.timescales.twopart import plain
 from lighttime.timescales.uniform import (
@@ -78,13 +80,15 @@ PARENT: Final = MappingProxyType(
         "tcg": "tt",
         "tdb": "tt",
         "tcb": "tdb",
+        "tcl": "tcb",
     }
 )
 """The tree of scales: each is defined by its relation to its parent."""
 
-SCALES: Final = tuple(PARENT)
+SCALES: Final = tuple(scale for scale in PARENT if scale != "tcl")
+"""Scales that are known without an ephemeris."""
 
-UNIFORM: Final = frozenset(SCALES) - {"utc", "ut1"}
+UNIFORM: Final = frozenset(PARENT) - {"utc", "ut1"}
 """Scales whose seconds do not depend on the rotation of the Earth."""
 
 _STEPS: Final[MappingProxyType[tuple[str, str], Callable[..., TwoPart]]] = MappingProxyType(
@@ -109,7 +113,7 @@ def known_scale(scale: str, name: str = "scale") -> str:
     """The scale, in lower case, or an `UnknownNameError`."""
     found = scale.lower() if isinstance(scale, str) else scale
     if found not in PARENT:
-        raise UnknownNameError(name, scale, SCALES)
+        raise UnknownNameError(name, scale, PARENT)
     return found
 
 
@@ -143,6 +147,7 @@ def convert(
     target: str,
     place: Place | None = None,
     earth_orientation: Rotation | None = None,
+    tdb: Choice = None,
 ) -> TwoPart:
     """A Julian date in one scale as one in another, through the scales between them.
 
@@ -151,21 +156,27 @@ def convert(
     jd1, jd2 : float or array
         Julian date in two parts, in `source`.
     source, target : str
-        Scales, of `SCALES`.
+        Scales, of `SCALES`, or ``tcl``.
     place : object with ``xyz_m``, optional
         Where the clock is, for steps between TT and TDB; the geocentre when not given.
     earth_orientation : object with ``at``, optional
         For steps to and from UT1, and between TT and TDB with a place; the bundled series when
         not given.
+    tdb : {"series", "integrated"} or TimeEphemeris, optional
+        For steps between TT and TDB, the series when not given; needed for TCL.
     """
     date: TwoPart = plain(date_pair(source, jd1, jd2))
     path = route(known_scale(source, "source"), known_scale(target, "target"))
     for here, there in pairwise(path):
         match here, there:
             case "tt", "tdb":
-                date = tt_to_tdb(*date, place, earth_orientation)
+                date = tt_to_tdb(*date, place, earth_orientation, tdb)
             case "tdb", "tt":
-                date = tdb_to_tt(*date, place, earth_orientation)
+                date = tdb_to_tt(*date, place, earth_orientation, tdb)
+            case "tcb", "tcl":
+                date = tcb_to_tcl(*date, chosen(tdb))
+            case "tcl", "tcb":
+                date = tcl_to_tcb(*date, chosen(tdb))
             case "tai", "ut1":
                 date = tai_to_ut1(*date, earth_orientation)
             case "ut1", "tai":

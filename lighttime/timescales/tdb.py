@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import Any
 
 import erfa
@@ -11,6 +12,7 @@ from numpy.typing import ArrayLike
 from lighttime.constants import DEGREE, J2000, JULIAN_CENTURY, TURN
 from lighttime.errors import InputError
 from lighttime.timescales.inputs import Place, Rotation, TwoPart, date_pair
+from lighttime.timescales.relation import Choice, chosen
 from lighttime.timescales.twopart import Array, Pair, add, divide, pair, plain, subtract
 from lighttime.timescales.uniform import DAY_PAIR
 from lighttime.timescales.ut1 import ut1_day_fraction
@@ -118,6 +120,11 @@ def tdb_minus_tt(
     return float(seconds) if np.ndim(seconds) == 0 else seconds
 
 
+def _difference(tdb: Choice) -> Callable[..., Any]:
+    relation = chosen(tdb)
+    return tdb_minus_tt if relation is None else relation.tdb_minus_tt
+
+
 def _days(seconds: Any) -> Pair:
     return divide(pair(seconds), DAY_PAIR)
 
@@ -135,6 +142,7 @@ def tt_to_tdb(
     tt2: ArrayLike,
     place: Place | None = None,
     earth_orientation: Rotation | None = None,
+    tdb: Choice = None,
 ) -> TwoPart:
     """TDB from TT of a clock at a place on the Earth (at the geocentre when none is given).
 
@@ -146,6 +154,8 @@ def tt_to_tdb(
         Where the clock is. Without one the daily term of up to 2 microseconds is left out.
     earth_orientation : object with ``at``, optional
         Gives UT1, needed with a place; the bundled series when not given.
+    tdb : {"series", "integrated"} or TimeEphemeris, optional
+        What TDB - TT is from: the series of `tdb_minus_tt` when not given.
 
     Notes
     -----
@@ -155,10 +165,11 @@ def tt_to_tdb(
     tt = date_pair("tt", tt1, tt2)
     xyz_m = _xyz_m(place)
     ut1 = 0.0 if xyz_m is None else ut1_day_fraction(tt, earth_orientation)
-    tdb = tt
+    difference = _difference(tdb)
+    found = tt
     for _ in range(2):
-        tdb = add(tt, _days(tdb_minus_tt(*tdb, ut1, xyz_m)))
-    return plain(tdb)
+        found = add(tt, _days(difference(*found, ut1, xyz_m)))
+    return plain(found)
 
 
 def tdb_to_tt(
@@ -166,6 +177,7 @@ def tdb_to_tt(
     tdb2: ArrayLike,
     place: Place | None = None,
     earth_orientation: Rotation | None = None,
+    tdb: Choice = None,
 ) -> TwoPart:
     """TT of a clock at a place on the Earth (at the geocentre when none is given) from TDB.
 
@@ -173,12 +185,13 @@ def tdb_to_tt(
     with a place, UT1 is found from TT, to which TDB itself is the first approximation: its
     2 milliseconds move the daily term by 3e-13 s, those by nothing.
     """
-    tdb = date_pair("tdb", tdb1, tdb2)
+    date = date_pair("tdb", tdb1, tdb2)
     xyz_m = _xyz_m(place)
+    difference = _difference(tdb)
     if xyz_m is None:
-        return plain(subtract(tdb, _days(tdb_minus_tt(*tdb))))
-    tt = tdb
+        return plain(subtract(date, _days(difference(*date, 0.0, None))))
+    tt = date
     for _ in range(2):
         ut1 = ut1_day_fraction(tt, earth_orientation)
-        tt = subtract(tdb, _days(tdb_minus_tt(*tdb, ut1, xyz_m)))
+        tt = subtract(date, _days(difference(*date, ut1, xyz_m)))
     return plain(tt)

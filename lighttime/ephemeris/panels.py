@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.polynomial import chebyshev
@@ -77,9 +78,7 @@ def states(ephemeris: Ephemeris, panels: Panels, x: Array) -> dict[str, State]:
     dict of str to State
         Arrays (3, panels, len(x)).
     """
-    found = {
-        name: _sampled(records, panels, x) for name, records in ephemeris.barycentric.items()
-    }
+    found = {name: _sampled(records, panels, x) for name, records in ephemeris.barycentric.items()}
     both = found.pop("earth_moon_barycentre")
     moon = _sampled(ephemeris.moon_from_earth, panels, x)
     offset = ephemeris.earth_from_barycentre
@@ -110,7 +109,7 @@ def _sampled(records: Records, panels: Panels, x: Array) -> State:
     rows = np.ascontiguousarray(np.moveaxis(records.coefficients[first:last], 1, 0))
     some = slice(skipped - first * each, skipped - first * each + panels.count)
 
-    def at(basis: Array) -> Array:
+    def at(basis: NDArray[Any]) -> Array:
         samples: Array = (rows @ basis.T).reshape(3, -1, x.size)[:, some] * records.scale
         return samples
 

@@ -331,7 +331,7 @@ def _to_gcrs(
     x, y, z = x - xp * z, y + yp * z, z + xp * x - yp * y
     fraction = np.asarray(ut1_fraction, dtype=np.float64)
     # UT1 and TDB are less than a few minutes apart: the day is that which brings them together
-    midnight = np.round((np.asarray(tdb1) - 0.5) + (tdb2 - fraction)) + 0.5
+    midnight = np.round((np.asarray(tdb1) - 0.5) + (np.asarray(tdb2) - fraction)) + 0.5
     era = erfa.era00(midnight, fraction)
     cosine, sine = np.cos(era), np.sin(era)
     x, y, z = np.broadcast_arrays(x * cosine - y * sine, x * sine + y * cosine, z)

@@ -2,9 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field, fields
-from types import MappingProxyType
+from collections.abc import Mapping
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -16,7 +15,7 @@ from lighttime.earth.station import Station
 from lighttime.moon.reflector import Reflector
 from lighttime.path.delays import GRAVITY_TERMS, elevation
 from lighttime.path.legs import Leg, Legs
-from lighttime.query import Index, Query
+from lighttime.query import Query
 from lighttime.terms import TERMS
 from lighttime.timescales import Epoch
 from lighttime.vectors import Array, dot
@@ -305,37 +304,3 @@ def _orientation_notes(series: EarthOrientation, when: Epoch) -> list[str]:
 
 def _day(jd: float) -> str:
     return str(Epoch(jd, 0.0, "tdb").isoformat(0))[:10]
-
-
-# -- shapes --------------------------------------------------------------------------------------
-
-
-def join(blocks: Sequence[Any], query: Query, order: Index | None = None) -> Any:
-    """The answers to the flat blocks of a query, worked off in `order`, as one in its shape."""
-    kept = {"query": query, "model": blocks[0].model, "not_modelled": blocks[0].not_modelled}
-    values = {
-        f.name: _gather([getattr(b, f.name) for b in blocks], query.shape, order)
-        for f in fields(blocks[0])
-        if f.name not in kept
-    }
-    return type(blocks[0])(**kept, **values)
-
-
-def _gather(parts: list[Any], shape: tuple[int, ...], order: Index | None) -> Any:
-    first = parts[0]
-    if first is None:
-        return None
-    if isinstance(first, Mapping):
-        return MappingProxyType({k: _gather([p[k] for p in parts], shape, order) for k in first})
-    if isinstance(first, LegAnswer):
-        names = [f.name for f in fields(LegAnswer)]
-        return LegAnswer(*(_gather([getattr(p, n) for p in parts], shape, order) for n in names))
-    whole = np.concatenate(parts)
-    if order is not None:
-        sorted_values, whole = whole, np.empty_like(whole)
-        whole[order] = sorted_values
-    whole = whole.reshape(shape)
-    if shape:
-        whole.flags.writeable = False
-        return whole
-    return float(whole)

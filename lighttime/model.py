@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass, fields
 from typing import Any, ClassVar
 
 import numpy as np
 
-from lighttime.answer import OneWay, RoundTrip, join
+from lighttime.answer import OneWay, RoundTrip
 from lighttime.constants import DAY, SPEED_OF_LIGHT
 from lighttime.earth.motion import StationMotion
 from lighttime.earth.series import EarthOrientation
@@ -16,13 +16,14 @@ from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.ephemeris.frame import EarthFrame
 from lighttime.errors import CoverageError, InputError, UnknownNameError
+from lighttime.gathering import gather
 from lighttime.moon.motion import ReflectorMotion
 from lighttime.moon.reflector import Reflector
 from lighttime.path.delays import gravity_delays, sine_of_elevation
 from lighttime.path.ends import Trajectory, TrajectoryMotion
 from lighttime.path.legs import Legs, solve_one_way, solve_round_trip
 from lighttime.path.troposphere import Weather, slant_delay
-from lighttime.query import Query
+from lighttime.query import Index, Query
 from lighttime.tables import Tables
 from lighttime.terms import omitted
 from lighttime.timescales import Epoch
@@ -144,14 +145,16 @@ class Model:
             If an input is out of coverage, not finite, below the horizon or of the wrong shape.
         """
         query = self._query(when, station, reflector, tag, weather, wavelength_nm, turnaround_s)
-        blocks, done = [], 0
-        order = query.order()
-        for part in query.blocks(BLOCK, order):
-            blocks.append(RoundTrip.of(self, part, self.solve(part)))
-            done += part.size
-            if progress is not None:
-                progress(done, query.size)
-        answer: RoundTrip = join(blocks, query, order)
+
+        def parts() -> Iterator[tuple[slice | Index, RoundTrip]]:
+            done = 0
+            for index, part in query.blocks(BLOCK):
+                yield index, RoundTrip.of(self, part, self.solve(part))
+                done += part.size
+                if progress is not None:
+                    progress(done, query.size)
+
+        answer: RoundTrip = gather(query, parts())
         return answer
 
     def one_way(
@@ -185,17 +188,19 @@ class Model:
         upward = not isinstance(end, Station)
         near, far = (start, end) if upward else (end, start)
         query = self._query(when, near, far, tag, weather, wavelength_nm, 0.0)
-        blocks = []
-        order = query.order()
-        for part in query.blocks(BLOCK, order):
-            _, near_end, far_end, delays = self._ends(part)
-            known_near = upward == (tag == "transmit")
-            leg = solve_one_way(
-                near_end, far_end, np.zeros(part.size), known_near,
-                +1 if tag == "transmit" else -1, upward, delays(upward), part.guess_s,
-            )  # fmt: skip
-            blocks.append(OneWay.of(self, part, leg, upward))
-        answer: OneWay = join(blocks, query, order)
+        sense = +1 if tag == "transmit" else -1
+        known_near = upward == (tag == "transmit")
+
+        def parts() -> Iterator[tuple[slice | Index, OneWay]]:
+            for index, part in query.blocks(BLOCK):
+                _, near_end, far_end, delays = self._ends(part)
+                leg = solve_one_way(
+                    near_end, far_end, np.zeros(part.size), known_near, sense, upward,
+                    delays(upward), part.guess_s,
+                )  # fmt: skip
+                yield index, OneWay.of(self, part, leg, upward)
+
+        answer: OneWay = gather(query, parts())
         return answer
 
     # -- solving one block -------------------------------------------------------------------

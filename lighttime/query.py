@@ -81,13 +81,17 @@ class Query:
             return None
         return np.argsort(jd, kind="stable")
 
-    def blocks(self, size: int, order: Index | None = None) -> Iterator[Query]:
-        """The same query in flat parts of at most `size` instants, in `order` if it is given."""
+    def blocks(self, size: int) -> Iterator[tuple[slice | Index, Query]]:
+        """The same query in flat parts of at most `size` instants, by time.
+
+        Each comes with where it lies in the flat query.
+        """
         when = Epoch(np.ravel(self.when.jd1), np.ravel(self.when.jd2), self.when.scale)
+        order = self.order()
         for first in range(0, max(self.size, 1), size):  # no epochs at all are a block, too
             part = slice(first, first + size)
             index = part if order is None else order[part]
-            yield replace(self, when=when[index], weather=self._weather(index))
+            yield index, replace(self, when=when[index], weather=self._weather(index))
 
     def _weather(self, part: slice | Index) -> Weather | None:
         weather = self.weather

@@ -19,19 +19,24 @@ if TYPE_CHECKING:
 
 def worksheet(answer: RoundTrip) -> Mapping[str, Any]:
     """See `RoundTrip.worksheet`: the range is solved again, and nothing is thrown away."""
-    rows: dict[str, list[Any]] = {}
-    for part in answer.query.blocks(8192):
+    sheet: dict[str, Any] = {}
+    for index, part in answer.query.blocks(8192):
         for name, value in _rows(answer, part):
-            rows.setdefault(name, []).append(value)
-    whole = {name: np.concatenate(parts, axis=-1) for name, parts in rows.items()}
-    return MappingProxyType(whole)
+            if name not in sheet:
+                sheet[name] = np.empty((*value.shape[:-1], answer.query.size))
+            sheet[name][..., index] = value
+    return MappingProxyType(sheet)
 
 
 def _rows(answer: RoundTrip, part: Query) -> list[tuple[str, Any]]:
     legs = answer.model.solve(part)
     up, down = legs.up, legs.down
+    # The solver carries an event along its velocity for the last step, of up to 100 ns, and not
+    # what it was made of: here all is told of the very instants that were found.
+    _, near, far, _ = answer.model._ends(part)
+    events = near.at(up.near.seconds), far.at(up.far.seconds), near.at(down.near.seconds)
     rows: list[tuple[str, Any]] = []
-    for name, event in (("t1", up.near), ("t2", up.far), ("t3", down.near)):
+    for name, event in zip(("t1", "t2", "t3"), events, strict=True):
         rows += _event(name, event)
     for name, leg, upward in (("uplink", up, True), ("downlink", down, False)):
         rows += _leg(name, leg, upward)

@@ -17,7 +17,8 @@ LEVELS = (
     {"ephemeris"},
     {"earth", "moon"},
     {"path"},
-    {"tables", "query", "model", "answer", "worksheet", "printing", "partials", "uncertainty"},
+    {"tables", "query", "gathering", "model", "answer", "worksheet", "printing"}
+    | {"partials", "uncertainty"},
     {"crosscheck"},
     {"progress", "commands", "cli", "__main__"},
 )

@@ -31,7 +31,7 @@ ECCENTRIC = replace(
 SITES = [ECCENTRIC, replace(MESA, eccentricities=[une(1, (FIRST[0], SECOND[1]), 0.0, 0.0, 0.0)])]
 
 generous = settings(
-    max_examples=150,
+    max_examples=80,
     deadline=None,
     suppress_health_check=[HealthCheck.function_scoped_fixture],
 )

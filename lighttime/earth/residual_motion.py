@@ -140,5 +140,6 @@ class ResidualMotion(_Coefficients):
         when = Epoch(self._tt.jd1[0], self._tt.jd2[0] + days, "tt").to(self.when.scale)
         first, last = self.coverage
         of = f" ({self.source})" if self.source else ""
-        allowed = f"{first.isoformat(3)} to {last}, the residual motion of the station{of}"
-        raise CoverageError("when", str(when), allowed)
+        span = f"{first.isoformat(3)} to {last.isoformat(3)} {self.when.scale.upper()}"
+        given = f"{when.isoformat(6)} {when.scale.upper()}"
+        raise CoverageError("when", given, f"{span}, the residual motion of the station{of}")

@@ -13,7 +13,8 @@ from lighttime.commands.writing import print_json, station_json
 from lighttime.constants import DAY, MJD_ZERO
 from lighttime.earth.series import EarthOrientation
 from lighttime.errors import LighttimeError
-from lighttime.timescales import SCALES, Epoch
+from lighttime.timescales import Epoch
+from lighttime.timescales.relation import INTEGRATED, SERIES
 from lighttime.timescales.scales import tai_minus_utc
 from lighttime.version import __version__
 
@@ -34,11 +35,11 @@ KEYS: Final = """\
   unavailable          why, for each scale that is missing
   notes                what the numbers rest on"""
 
-ORDER: Final = ("utc", "tai", "tt", "tdb", "ut1", "tcg", "tcb", "gps", "gst")
+ORDER: Final = ("utc", "tai", "tt", "tdb", "ut1", "tcg", "tcb", "tcl", "gps", "gst")
 
 PAIRS: Final = (
     ("tt", "tai"), ("gps", "tai"), ("gst", "tai"), ("ut1", "tai"), ("ut1", "utc"),
-    ("tdb", "tt"), ("tcg", "tt"), ("tcb", "tdb"),
+    ("tdb", "tt"), ("tcg", "tt"), ("tcb", "tdb"), ("tcl", "tt"),
 )  # fmt: skip
 """Differences that are told, after TAI - UTC."""
 
@@ -48,7 +49,7 @@ def add(subparsers: Any) -> None:
     parser = options.command(subparsers, "scales", run, SUMMARY, KEYS)
     parser.add_argument("instant", metavar="INSTANT", help="2006-01-15T21:24:37.5")
     parser.add_argument(
-        "--scale", choices=SCALES, default="utc", help="its time scale; utc when not given"
+        "--scale", choices=ORDER, default="utc", help="its time scale; utc when not given"
     )
     options.add_station(parser.add_argument_group("where the clock is, for TDB and TCB"), False)
     parser.add_argument(
@@ -56,14 +57,23 @@ def add(subparsers: Any) -> None:
         metavar="FILE",
         help="IERS series that UT1 is from (C04 or finals2000A); the bundled when not given",
     )
+    parser.add_argument(
+        "--tdb",
+        choices=(SERIES, INTEGRATED),
+        default=SERIES,
+        help="TDB - TT by the series of Fairhead and Bretagnon, or integrated from DE421, which "
+        "takes a second and gives TCL as well; the series when not given",
+    )
     parser.add_argument("--json", action="store_true", help="print JSON, for programs")
 
 
 def run(arguments: argparse.Namespace) -> int:
     """Do what was asked."""
+    if arguments.scale == "tcl" and arguments.tdb == SERIES:
+        raise LighttimeError("--scale tcl needs --tdb integrated")
     given = options.instants("INSTANT", [arguments.instant], arguments.scale)
     place, series = options.station(arguments), options.earth_orientation(arguments)
-    told, unavailable = _in_every_scale(given, place, series)
+    told, unavailable = _in_every_scale(given, place, series, arguments.tdb)
     found = {
         "lighttime": __version__,
         "given": {"text": arguments.instant, "scale": arguments.scale},
@@ -72,7 +82,7 @@ def run(arguments: argparse.Namespace) -> int:
         "differences_s": _differences(told),
         "ut1_sigma_s": _ut1_sigma(told, series),
         "unavailable": unavailable,
-        "notes": _notes(told, place, series),
+        "notes": _notes(told, place, series, arguments.tdb),
     }
     if arguments.json:
         print_json(found, sys.stdout)
@@ -82,14 +92,16 @@ def run(arguments: argparse.Namespace) -> int:
 
 
 def _in_every_scale(
-    given: Epoch, place: Any, series: EarthOrientation
+    given: Epoch, place: Any, series: EarthOrientation, tdb: str
 ) -> tuple[dict[str, Epoch], dict[str, str]]:
     """The instant in each scale that it can be told in, and why not in the others."""
     told, unavailable = {}, {}
-    tai = given.to("tai", place=place, earth_orientation=series)
+    tai = given.to("tai", place, series, tdb)
     for scale in ORDER:
+        if scale == "tcl" and tdb == SERIES:
+            continue
         try:
-            told[scale] = (given if scale == given.scale else tai).to(scale, place, series)
+            told[scale] = (given if scale == given.scale else tai).to(scale, place, series, tdb)
         except LighttimeError as error:
             unavailable[scale] = str(error)
     return told, unavailable
@@ -129,8 +141,11 @@ def _ut1_sigma(told: dict[str, Epoch], series: EarthOrientation) -> float | None
     return float(series.sigmas(told["tai"].jd1, told["tai"].jd2).ut1_tai_s)
 
 
-def _notes(told: dict[str, Epoch], place: Any, series: EarthOrientation) -> list[str]:
-    notes = []
+def _notes(told: dict[str, Epoch], place: Any, series: EarthOrientation, tdb: str) -> list[str]:
+    if tdb == SERIES:
+        notes = ["TDB - TT by the series of Fairhead and Bretagnon"]
+    else:
+        notes = ["TDB - TT integrated from DE421; TCL is that of a clock at the centre of the Moon"]
     if place is None:
         notes.append(
             "TDB and TCB of a clock at the geocentre: at a station they differ by up to 3 us"

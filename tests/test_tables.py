@@ -55,7 +55,9 @@ def test_order_does_not_matter(tabulated: lt.RoundTrip) -> None:
 def test_threads_share_a_model(tabulated: lt.RoundTrip) -> None:
     model = lt.Model()
     with ThreadPoolExecutor(6) as pool:
-        answers = pool.map(lambda _: model.round_trip(night(600), HILLTOP, ARRAY).seconds, range(12))
+        answers = pool.map(
+            lambda _: model.round_trip(night(600), HILLTOP, ARRAY).seconds, range(12)
+        )
     assert all(np.array_equal(a, tabulated.seconds) for a in answers)
 
 

@@ -187,16 +187,28 @@ def _ephemeris_lines(told: dict[str, Any]) -> list[str]:
     ]
 
 
+def _reaches(told: dict[str, Any]) -> list[str]:
+    """How far each kind of value reaches, where it ends before the series does."""
+    final, measured, dxdy = (told[f"last_{kind}_utc"] for kind in ("final", "measured", "dxdy"))
+    last = told["last_utc"]
+    parts = [f"final to {final}"] if final else []
+    if measured != final:
+        parts.append(f"measured to {measured}" if measured else "nothing measured")
+    if measured != last:
+        parts.append("then predicted")
+    if dxdy != last:
+        parts.append(f"dX and dY to {dxdy}, then zero" if dxdy else "dX and dY zero")
+    return parts
+
+
 def _orientation_lines(told: dict[str, Any]) -> list[str]:
     equator_m_per_s = EARTH_ROTATION_RATE * EARTH_EQUATORIAL_RADIUS
     lines = [
         f"Earth orientation {told['name']}",
         f"  {told['first_utc']} to {told['last_utc']} UTC",
-        f"  final to {told['last_final_utc'] or 'no day'}, measured to "
-        f"{told['last_measured_utc'] or 'no day'}, predicted after that",
-        f"  dX, dY published to {told['last_dxdy_utc'] or 'no day'}, zero after that",
-        "  one sigma (UT1 also as what it moves a place on the equator):",
-        f"    {'day':12}{'UT1, ms':>10}{'= mm':>10}{'x, mas':>10}{'y, mas':>10}"
+        f"  {', '.join(_reaches(told))}",
+        "  one sigma (of UT1 also as what it moves a place on the equator):",
+        f"    {'day':12}{'UT1, ms':>10}{'UT1, mm':>10}{'x, mas':>10}{'y, mas':>10}"
         f"{'dX, mas':>10}{'dY, mas':>10}   days after measured",
     ]
     for row in told["sigmas"]:

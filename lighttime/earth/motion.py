@@ -160,6 +160,10 @@ class StationMotion:
             ladder=ladder,
         )
 
+    def jumps(self, before: Array, after: Array) -> bool:
+        """Whether records of the ephemeris meet between two instants; see `path.solver`."""
+        return self.frame.crosses_seam(before, after)
+
     def predicted_from(self, event: StationEvent) -> Callable[[Array], PredictedEvent]:
         """The station some seconds from a known event, good to 1e-14 s of light time.
 

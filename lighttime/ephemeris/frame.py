@@ -74,8 +74,8 @@ class EarthFrame:
         return records.jet(records.locate(self.tdb1, self.tdb2), ORDER)
 
     @cached_property
-    def _seam(self) -> NDArray[np.bool_]:
-        """Epochs that have the end of a record of Earth, Moon or libration near them."""
+    def _rows(self) -> list[Records]:
+        """The records of Earth, Moon and libration."""
         ephemeris = self.ephemeris
         rows = (
             ephemeris.barycentric["earth_moon_barycentre"],
@@ -83,12 +83,35 @@ class EarthFrame:
             ephemeris.earth_from_barycentre,
             ephemeris.angles,
         )
+        return [records for records in rows if isinstance(records, Records)]
+
+    @cached_property
+    def _seam(self) -> NDArray[np.bool_]:
+        """Epochs that have the end of a record of Earth, Moon or libration near them."""
         near = np.zeros(np.shape(self.tdb1), dtype=bool)
-        for records in rows:
-            if isinstance(records, Records):
-                days = np.abs(records.locate(self.tdb1, self.tdb2).days)
-                near |= days > 0.5 * records.span_days - NEAR_S / DAY
+        for records in self._rows:
+            days = np.abs(records.locate(self.tdb1, self.tdb2).days)
+            near |= days > 0.5 * records.span_days - NEAR_S / DAY
         return near
+
+    def crosses_seam(self, before: Array, after: Array) -> bool:
+        """Whether the end of a record of Earth, Moon or libration lies between two instants.
+
+        Records meet to tens of micrometres, and no velocity leads over that step.
+
+        Parameters
+        ----------
+        before, after : array, shape (n,)
+            Seconds after the tagged instants, less than `NEAR_S`.
+        """
+        near = self._seam
+        if not near.any():
+            return False
+        tdb1, tdb2, before, after = (a[near] for a in (self.tdb1, self.tdb2, before, after))
+        return any(
+            bool(np.any(r.locate(tdb1, tdb2, before).index != r.locate(tdb1, tdb2, after).index))
+            for r in self._rows
+        )
 
     def _at(
         self,

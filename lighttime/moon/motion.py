@@ -108,6 +108,10 @@ class ReflectorMotion:
         }  # fmt: skip
         return ReflectorEvent(seconds, position, velocity, moon, moon_velocity, shifts, ladder)
 
+    def jumps(self, before: Array, after: Array) -> bool:
+        """Whether records of the ephemeris meet between two instants; see `path.solver`."""
+        return self.frame.crosses_seam(before, after)
+
     def rough(self, seconds: Array) -> RoughEvent:
         """The reflector without tide and contraction, turned on from the tagged instant.
 

@@ -63,8 +63,12 @@ def gravity_delays(
         gm = frame.ephemeris.gm(body)
         delays[body] = moving_body(gm, x1, 0.0, x2, later, velocity, gamma, bending, distance)
         if body == "earth":
+            near_at_rest = in_rest_frame(x1, 0.0, velocity)
             far_at_rest = in_rest_frame(x2, later, velocity)
-            delays[body] += oblateness(gm * _j2_radius2(frame), x1, far_at_rest, _axis(near), gamma)
+            flattened = oblateness(
+                gm * _j2_radius2(frame), near_at_rest, far_at_rest, _axis(near), gamma
+            )
+            delays[body] += flattened * (norm(far_at_rest - near_at_rest) / distance)
     return delays
 
 

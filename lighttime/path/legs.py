@@ -125,23 +125,25 @@ def solve_round_trip(
     up_from_far = _known_far(delays_up)
     if tag == "bounce":
         arrival = far.at(tagged)
-        up = solve_leg(arrival, near.at, -1, guess_s, up_from_far)
+        up = solve_leg(arrival, near.at, -1, guess_s, up_from_far, _jumps(near))
         departure = _after(far, arrival, turnaround_s)
         guess = _predict(near, up.found, departure, +1, up.seconds)
-        down = solve_leg(departure, near.at, +1, guess, down_from_far)
+        down = solve_leg(departure, near.at, +1, guess, down_from_far, _jumps(near))
         return Legs(_leg(up, True, True), _leg(down, True, False), tag)
     if tag == "transmit":
         start = near.at(tagged)
-        up = solve_leg(start, far.at, +1, _rough(far, start, +1, guess_s), delays_up)
+        guess = _rough(far, start, +1, guess_s)
+        up = solve_leg(start, far.at, +1, guess, delays_up, _jumps(far))
         departure = _after(far, up.found, turnaround_s)
         guess = _predict(near, up.known, departure, +1, up.seconds)
-        down = solve_leg(departure, near.at, +1, guess, down_from_far)
+        down = solve_leg(departure, near.at, +1, guess, down_from_far, _jumps(near))
         return Legs(_leg(up, False, True), _leg(down, True, False), tag)
     stop = near.at(tagged)
-    down = solve_leg(stop, far.at, -1, _rough(far, stop, -1, guess_s), delays_down)
+    guess = _rough(far, stop, -1, guess_s)
+    down = solve_leg(stop, far.at, -1, guess, delays_down, _jumps(far))
     arrival = _after(far, down.found, -turnaround_s)
     guess = _predict(near, down.known, arrival, -1, down.seconds)
-    up = solve_leg(arrival, near.at, -1, guess, up_from_far)
+    up = solve_leg(arrival, near.at, -1, guess, up_from_far, _jumps(near))
     return Legs(_leg(up, True, True), _leg(down, False, False), tag)
 
 
@@ -157,9 +159,16 @@ def solve_one_way(
 ) -> Leg:
     """Solve a single leg, from the near (`known_near`) or the far end, forwards or backwards."""
     if known_near:
-        return _leg(solve_leg(near.at(tagged), far.at, sense, guess_s, delays), False, upward)
-    back = _known_far(delays)
-    return _leg(solve_leg(far.at(tagged), near.at, sense, guess_s, back), True, upward)
+        found = solve_leg(near.at(tagged), far.at, sense, guess_s, delays, _jumps(far))
+        return _leg(found, False, upward)
+    found = solve_leg(far.at(tagged), near.at, sense, guess_s, _known_far(delays), _jumps(near))
+    return _leg(found, True, upward)
+
+
+def _jumps(end: Any) -> Callable[[Array, Array], bool] | None:
+    """Whether the motion of an end jumps between two instants, if it can say so."""
+    jumps: Callable[[Array, Array], bool] | None = getattr(end, "jumps", None)
+    return jumps
 
 
 def _after(far: End, event: Any, seconds: float) -> Any:

@@ -26,6 +26,9 @@ ACCEPTED_STEP_S = 1.0e-7
 """A last step below this is taken along the velocity; what it neglects (the change of TDB - TT,
 5e-10 of the step, that of the delays, and the curvature of the motion) stays below 1e-16 s."""
 
+SETTLED_S = 1.0e-12
+"""A step below this is the last one, even over a place where the motion jumps."""
+
 MOST_ITERATIONS = 12
 
 
@@ -88,6 +91,7 @@ def solve_leg(
     sense: int,
     guess_s: ArrayLike,
     delays: Callable[[Any, E], Mapping[str, Array]] | None = None,
+    jumps: Callable[[Array, Array], bool] | None = None,
 ) -> Solved:
     """Find the event on the other end that the light joins to a known one.
 
@@ -103,6 +107,9 @@ def solve_leg(
         A first guess of the light time, s.
     delays : callable, optional
         From (known, unknown) event to the delays beyond geometry, by name, s.
+    jumps : callable, optional
+        Whether the motion of the unknown end jumps between two instants, as it does where two
+        records of an ephemeris meet: no step is then taken along the velocity.
 
     Raises
     ------
@@ -120,7 +127,8 @@ def solve_leg(
         slope = sense - dot(separation, event.velocity) / distance / SPEED_OF_LIGHT
         step = -miss / slope
         largest = float(np.max(np.abs(step), initial=0.0))
-        if largest <= ACCEPTED_STEP_S:
+        smooth = jumps is None or largest <= SETTLED_S or not jumps(seconds, seconds + step)
+        if largest <= ACCEPTED_STEP_S and smooth:
             event = moved(event, step)
             separation = event.position - known.position
             distance = norm(separation)

@@ -31,15 +31,18 @@ from lighttime.ephemeris.chebyshev import Records
 from lighttime.ephemeris.panels import Panels, states
 from lighttime.ephemeris.quadrature import antiderivative, nodes
 from lighttime.ephemeris.time_rate import place_term, slowing, tdb_minus_tt_rate
-from lighttime.errors import CoverageError, InputError
+from lighttime.errors import CoverageError, InputError, UnknownNameError
 from lighttime.timescales import Epoch
 from lighttime.timescales.inputs import date_pair
+from lighttime.timescales.relation import INTEGRATED, SERIES
 from lighttime.timescales.tcl import TCL_RATE
 
 Array = NDArray[np.float64]
 
 SAMPLES = 23
 """In a panel. Every second one gives the integral of half the order, to compare with."""
+
+_YEAR_1900, _YEAR_2200 = 2414992.5, 2524624.5
 
 NEGLIGIBLE_S = 1e-19
 """Coefficients of the series that are smaller in every panel are dropped."""
@@ -247,8 +250,41 @@ class TimeEphemeris:
 
 @lru_cache(maxsize=4)
 def of(ephemeris: Ephemeris) -> TimeEphemeris:
-    """`TimeEphemeris.integrate` over all of an ephemeris, kept for the next who asks."""
-    return TimeEphemeris.integrate(ephemeris)
+    """`TimeEphemeris.integrate` over an ephemeris, kept for the next who asks.
+
+    From 1900 to 2200 where the ephemeris reaches further: some go over millennia.
+    """
+    begin, end = ephemeris.coverage
+    return TimeEphemeris.integrate(
+        ephemeris,
+        Epoch(max(begin, _YEAR_1900), 0.0, "tdb"),
+        Epoch(min(end, _YEAR_2200), 0.0, "tdb"),
+    )
+
+
+def chosen(tdb: str | TimeEphemeris, ephemeris: Ephemeris) -> TimeEphemeris | None:
+    """What a model's TDB - TT is from; None for the series.
+
+    Parameters
+    ----------
+    tdb : {"series", "integrated"} or TimeEphemeris
+    ephemeris : Ephemeris
+        The model's.
+
+    Raises
+    ------
+    UnknownNameError
+        For any other name.
+    InputError
+        For one that was integrated from another ephemeris.
+    """
+    if isinstance(tdb, TimeEphemeris):
+        if tdb.ephemeris.name != ephemeris.name:
+            raise InputError("tdb", tdb, f"one integrated from {ephemeris.name}")
+        return tdb
+    if tdb not in (SERIES, INTEGRATED):
+        raise UnknownNameError("tdb", tdb, (SERIES, INTEGRATED, "or a TimeEphemeris"))
+    return None if tdb == SERIES else of(ephemeris)
 
 
 def _tdb(when: Any) -> float:

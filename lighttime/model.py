@@ -9,13 +9,13 @@ from typing import Any, ClassVar
 import numpy as np
 
 from lighttime.answer import OneWay, RoundTrip
-from lighttime.constants import DAY, SPEED_OF_LIGHT
+from lighttime.constants import DAY, DEGREE, SPEED_OF_LIGHT
 from lighttime.earth.motion import StationMotion
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.ephemeris.frame import EarthFrame
-from lighttime.errors import CoverageError, InputError, UnknownNameError
+from lighttime.errors import CoverageError, HorizonError, InputError, UnknownNameError
 from lighttime.gathering import gather
 from lighttime.moon.motion import ReflectorMotion
 from lighttime.moon.reflector import Reflector
@@ -295,11 +295,14 @@ class Model:
         self, query: Query, weather: Weather, near: Any, far: Any, upward: bool
     ) -> Array:
         station = query.station
-        metres = slant_delay(
-            np.arcsin(sine_of_elevation(near, far, upward)),
-            station.latitude_rad,
-            station.height_m,
-            weather,
-            query.wavelength_nm,
-        )
+        angle = np.arcsin(sine_of_elevation(near, far, upward))
+        try:
+            metres = slant_delay(
+                angle, station.latitude_rad, station.height_m, weather, query.wavelength_nm
+            )
+        except HorizonError as error:
+            lowest = int(np.argmin(angle))
+            when = query.when[lowest] if query.shape else query.when
+            value = round(float(angle[lowest]) / DEGREE, 4)
+            raise HorizonError(f"elevation_deg at {when}", value, error.allowed) from None
         return np.asarray(metres) / SPEED_OF_LIGHT

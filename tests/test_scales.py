@@ -13,7 +13,7 @@ import erfa
 import numpy as np
 import pytest
 
-from lighttime.errors import CoverageError, InputError, UnknownNameError
+from lighttime.errors import CoverageError, InputError, LighttimeError, UnknownNameError
 from lighttime.timescales import SCALES, Epoch, scales
 from lighttime.timescales.leapseconds import utc_day_seconds, utc_table
 from lighttime.timescales.tdb import tdb_minus_tt, tdb_to_tt, tt_to_tdb
@@ -375,3 +375,32 @@ def test_terms_of_the_place_are_those_of_erfa() -> None:
     expected = tdb_minus_tt(day, fraction, ut1, xyz) - tdb_minus_tt(day, fraction, ut1)
     assert np.abs(topocentric(day, fraction, ut1, xyz) - expected).max() < 1e-18
     assert np.abs(expected).max() > 1.8e-6
+
+
+def test_leap_seconds_are_those_of_the_iers_list() -> None:
+    """The longer of ERFA's table and the list of `astropy-iers-data`, read through astropy."""
+    from astropy.utils import iers
+
+    from lighttime.timescales.leapseconds import utc_table
+
+    listed = iers.LeapSeconds.from_iers_leap_seconds(iers.IERS_LEAP_SECOND_FILE)
+    ours = utc_table()
+    late = ours.mjd >= 41317
+    assert ours.mjd[late].tolist() == [int(m) for m in listed["mjd"][: late.sum()]]
+    assert (ours.offset[late] / 1e7).tolist() == [float(v) for v in listed["tai_utc"][: late.sum()]]
+
+
+def test_a_newer_list_is_used(monkeypatch: pytest.MonkeyPatch) -> None:
+    """An old pyerfa beside a new list: as if ERFA did not know of 2017."""
+    import erfa
+
+    from lighttime.timescales import leapseconds
+
+    old = erfa.leap_seconds.get()[:-1]
+    monkeypatch.setattr(erfa.leap_seconds, "get", lambda: old)
+    assert leapseconds._leap_seconds()[-1].tolist() == [2017, 1, 37]
+    wrong = erfa.leap_seconds.get().copy()
+    wrong["tai_utc"][-1] = 99.0
+    monkeypatch.setattr(erfa.leap_seconds, "get", lambda: wrong)
+    with pytest.raises(LighttimeError, match="contradict each other"):
+        leapseconds._leap_seconds()

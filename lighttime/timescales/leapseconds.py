@@ -9,7 +9,10 @@ Beyond its last entry the leap-second table is continued without a leap second: 
 one today, and when one is announced a newer table brings it. That the table has passed its
 date of expiry is no error. UTC is taken from 1960-01-01 up to 2100-01-01.
 
-Source: USNO/IERS, table tai-utc; IERS Bulletin C (through ``erfa.leap_seconds``).
+The table is the longer of two: the one in ERFA, and the IERS list that comes with the series of
+Earth orientation (`astropy-iers-data`), so that the two can never be a leap second apart.
+
+Source: USNO/IERS, table tai-utc; IERS Bulletin C, list Leap_Second.dat.
 """
 
 from __future__ import annotations
@@ -18,6 +21,7 @@ from dataclasses import dataclass
 from datetime import date
 from fractions import Fraction
 from functools import cache
+from importlib.resources import files
 from typing import Final
 
 import erfa
@@ -26,7 +30,7 @@ from numpy.typing import NDArray
 
 from lighttime.constants import DAY, MJD_ZERO
 from lighttime.data import table
-from lighttime.errors import CoverageError
+from lighttime.errors import CoverageError, LighttimeError
 from lighttime.timescales.twopart import Array
 
 Whole = NDArray[np.int64]
@@ -66,12 +70,27 @@ class UtcTable:
         return ticks
 
 
+def _leap_seconds() -> Whole:
+    """Year, month and TAI - UTC (s) of each step from 1972 on, shape (steps, 3)."""
+    erfas = erfa.leap_seconds.get()
+    known = np.array([(r["year"], r["month"], r["tai_utc"]) for r in erfas if r["year"] >= 1972])
+    text = files("astropy_iers_data").joinpath("data", "Leap_Second.dat").read_text("ascii")
+    rows = (line.split() for line in text.splitlines() if line.strip() and line[0] != "#")
+    listed = np.array([(int(year), int(month), int(offset)) for _, _, month, year, offset in rows])
+    shorter, longer = sorted((known.astype(np.int64), listed.astype(np.int64)), key=len)
+    if not np.array_equal(longer[: len(shorter)], shorter):
+        raise LighttimeError(
+            "the leap seconds of pyerfa and of astropy-iers-data contradict each other "
+            f"(they end in {known[-1].tolist()} and {listed[-1].tolist()})"
+        )
+    return longer
+
+
 @cache
 def utc_table() -> UtcTable:
     """The table, read once in a process: what UTC means does not change under a running user."""
     early = table("utc_1960_1971")
-    late = erfa.leap_seconds.get()
-    late = late[late["year"] >= 1972]
+    late = _leap_seconds()
 
     def joined(before: NDArray[np.float64], after: NDArray[np.float64], unit: float) -> Whole:
         whole: Whole = np.rint(np.concatenate([before, after]) * unit).astype(np.int64)
@@ -79,8 +98,8 @@ def utc_table() -> UtcTable:
         return whole
 
     none = np.zeros(len(late))
-    year = np.concatenate([early["year"], late["year"]]).astype(int)
-    month = np.concatenate([early["month"], late["month"]]).astype(int)
+    year = np.concatenate([early["year"], late[:, 0]]).astype(int)
+    month = np.concatenate([early["month"], late[:, 1]]).astype(int)
     days = [
         date(y, m, 1).toordinal() - MJD_OF_ORDINAL
         for y, m in zip(year.tolist(), month.tolist(), strict=True)
@@ -89,7 +108,7 @@ def utc_table() -> UtcTable:
     mjd.flags.writeable = False
     return UtcTable(
         mjd,
-        joined(early["tai_minus_utc_s"], late["tai_utc"], TICK),
+        joined(early["tai_minus_utc_s"], late[:, 2], TICK),
         joined(early["reference_mjd"], none, 1.0),
         joined(early["drift_s_per_day"], none, TICK),
     )

@@ -94,17 +94,21 @@ class ReflectorMotion:
         # -- BCRS -----------------------------------------------------------------------------
         icrs = _from(axes, local)
         position = moon + icrs
+        scale_change = np.zeros_like(seconds)
         if "reflector_contraction" not in self.omit:
-            contraction = self._scale(seconds, moon) * icrs - moon_velocity * (
+            scale_change = self._scale(seconds, moon)
+            contraction = scale_change * icrs - moon_velocity * (
                 dot(moon_velocity, icrs) / (2.0 * c**2)
             )
             shifts["reflector_contraction"] = contraction
             position = moon + (icrs + contraction)
         velocity = moon_velocity + cross(angular_velocity(angles, rates), icrs)
         ladder = {
-            "libration_rad": angles, "principal_axes_m": local, "icrs_m": icrs,
+            "libration_rad": angles, "libration_rate_rad_per_s": rates,
+            "principal_axes_m": local, "icrs_m": icrs,
             "moon_geocentric_m": geocentric, "moon_velocity_m_per_s": moon_velocity,
-            "sun_from_moon_m": sun,
+            "earth_velocity_m_per_s": earth_velocity,
+            "sun_from_moon_m": sun, "scale_change": scale_change,
         }  # fmt: skip
         return ReflectorEvent(seconds, position, velocity, moon, moon_velocity, shifts, ladder)
 

@@ -14,7 +14,7 @@ from lighttime.constants import MOON_MEAN_RADIUS
 from lighttime.errors import InputError
 from lighttime.vectors import dot, norm
 
-__all__ = ["H2", "L2", "lunar_tide", "permanent_lunar_tide"]
+__all__ = ["H2", "L2", "lunar_tide", "permanent_lunar_tide", "permanent_tensor"]
 
 Array = NDArray[np.float64]
 
@@ -145,17 +145,32 @@ def permanent_lunar_tide(
     """
     r = _vectors("r_pa_m", r_pa_m)
     up = r / norm(r)
-    displacement = np.zeros_like(r)
+    tensor = permanent_tensor(gm_moon, gm_earth, gm_sun)
+    pull: Array = np.tensordot(tensor, up, axes=1)
+    along = dot(up, pull)
+    return h2 * (1.5 * along - 0.5 * np.trace(tensor)) * up + 3.0 * l2 * (pull - along * up)
+
+
+def permanent_tensor(gm_moon: float, gm_earth: float, gm_sun: float) -> Array:
+    """The mean of the tide's tensor: of size times n n^T, of Earth and Sun together.
+
+    Parameters
+    ----------
+    gm_moon, gm_earth, gm_sun
+        As in `lunar_tide`.
+
+    Returns
+    -------
+    ndarray, shape (3, 3)
+        Principal axes, metres. Its trace is the mean of the size.
+    """
+    tensor = np.zeros((3, 3))
     for gm, distance, direction in (
         (gm_earth, _EARTH_MEAN_DISTANCE, _EARTH_DIRECTION),
         (gm_sun, _SUN_MEAN_DISTANCE, _SUN_DIRECTION),
     ):
-        pull: Array = np.tensordot(direction, up, axes=1)  # the mean of n (n . up)
-        cosine_squared = dot(up, pull)
-        size = gm / gm_moon * MOON_MEAN_RADIUS * (MOON_MEAN_RADIUS / distance) ** 3
-        radial = h2 * (1.5 * cosine_squared - 0.5)
-        displacement += size * (radial * up + 3.0 * l2 * (pull - cosine_squared * up))
-    return displacement
+        tensor += gm / gm_moon * MOON_MEAN_RADIUS * (MOON_MEAN_RADIUS / distance) ** 3 * direction
+    return tensor
 
 
 def _vectors(name: str, value: ArrayLike) -> Array:

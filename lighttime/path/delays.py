@@ -109,14 +109,20 @@ def sine_of_elevation(near: Any, far: Any, upward: bool) -> Array:
     upward : bool
         True for the uplink.
     """
+    seen = seen_from_station(near, far, upward)
+    sine: Array = (1.0 if upward else -1.0) * dot(seen, near.up) / norm(seen)
+    return sine
+
+
+def seen_from_station(near: Any, far: Any, upward: bool) -> Array:
+    """Direction in which the light flies in the rest frame of the station, not of unit length."""
     sense = 1.0 if upward else -1.0
     ray = sense * (far.position - near.position)
     ray = ray / norm(ray)
     beta = near.velocity / c
     lorentz = 1.0 / np.sqrt(1.0 - dot(beta, beta))
-    seen = ray + lorentz * (lorentz / (1.0 + lorentz) * dot(beta, ray) - 1.0) * beta
-    sine: Array = sense * dot(seen, near.up) / norm(seen)
-    return sine
+    seen: Array = ray + lorentz * (lorentz / (1.0 + lorentz) * dot(beta, ray) - 1.0) * beta
+    return seen
 
 
 def elevation(near: Any, far: Any, upward: bool) -> Array | None:

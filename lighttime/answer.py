@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from lighttime.constants import DEGREE, MJD_ZERO, SPEED_OF_LIGHT
+from lighttime.earth.alone import geocentre
 from lighttime.earth.displacement import not_modelled
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
@@ -24,6 +25,7 @@ if TYPE_CHECKING:
     from astropy.table import QTable
 
     from lighttime.model import Model
+    from lighttime.partials import Parameter, Partials
 
 c = SPEED_OF_LIGHT
 
@@ -45,6 +47,8 @@ class LegAnswer:
     elevation_deg : float, array or None
         Elevation of the ray in the rest frame of the station (without refraction); None where
         no station is at the end.
+    own : mapping of str to float or array
+        Delays by a user's own terms, s.
     """
 
     seconds: Any
@@ -52,11 +56,13 @@ class LegAnswer:
     gravity: Mapping[str, Any]
     troposphere: Any
     elevation_deg: Any
+    own: Mapping[str, Any]
 
     @classmethod
     def of(cls, leg: Leg, upward: bool) -> LegAnswer:
         """From a solved leg."""
-        gravity = {k: v for k, v in leg.delays.items() if k != "troposphere"}
+        gravity = {k: v for k, v in leg.delays.items() if k in GRAVITY_TERMS}
+        own = {k: v for k, v in leg.delays.items() if k not in (*gravity, "troposphere")}
         angle = elevation(leg.near, leg.far, upward)
         return cls(
             leg.seconds,
@@ -64,6 +70,7 @@ class LegAnswer:
             gravity,
             leg.delays.get("troposphere"),
             None if angle is None else angle / DEGREE,
+            own,
         )
 
 
@@ -155,7 +162,7 @@ class RoundTrip(Answer):
             query=query,
             model=model,
             seconds=high,
-            terms={"geometry": geometry} | {n: terms[n] for n in TERMS if n in terms},
+            terms=_in_order(geometry, terms),
             not_modelled=_not_modelled(model, query),
             seconds_low=low,
             uplink=LegAnswer.of(up, True),
@@ -180,6 +187,48 @@ class RoundTrip(Answer):
         from lighttime.worksheet import worksheet
 
         return worksheet(self)
+
+    def partials(self, names: Iterable[str | Parameter] | None = None) -> Partials:
+        """Derivatives of the round trip with respect to what it depends on.
+
+        Parameters
+        ----------
+        names : iterable of str or Parameter, optional
+            Names of `lighttime.partials.PARAMETERS` (they end in the unit), parameters of the
+            model's own delay terms (``"term.parameter"``), or a `Parameter` of one's own. All
+            but the last, as far as their inputs were given, when not given.
+
+        Returns
+        -------
+        Partials
+            A mapping from names to floats or arrays; `Partials.table` and `Partials.matrix`
+            give them as tables.
+
+        Raises
+        ------
+        UnknownNameError
+            For a name that is none.
+        InputError
+            For a parameter that needs an input which was not given.
+
+        Notes
+        -----
+        The tagged epoch is held; the other events move with every change, and the light-time
+        equation is differentiated so. Each parameter moves alone: the Moon's position with the
+        Earth held, the Earth's velocity with its position at the tagged epoch held.
+
+        Examples
+        --------
+        >>> import lighttime as lt
+        >>> hilltop = lt.Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
+        >>> answer = lt.round_trip("2020-03-01T19:00:00", hilltop, lt.reflector("Apollo 15"))
+        >>> slopes = answer.partials(["reflector_x_m", "ut1_s"])
+        >>> f"{slopes['reflector_x_m']:.3e}"
+        '-6.635e-09'
+        """
+        from lighttime.partials import partials
+
+        return partials(self, names)
 
     def __str__(self) -> str:
         from lighttime.printing import round_trip_text
@@ -212,7 +261,7 @@ class OneWay(Answer):
             query=query,
             model=model,
             seconds=leg.seconds,
-            terms={"geometry": geometry} | {n: terms[n] for n in TERMS if n in terms},
+            terms=_in_order(geometry, terms),
             not_modelled=_not_modelled(model, query),
             leg=LegAnswer.of(leg, upward),
         )
@@ -242,6 +291,12 @@ def _terms(legs: Legs, omit: Any) -> dict[str, Array]:
     if "clock" not in omit and hasattr(legs.up.near, "tdb_minus_tt"):
         terms["clock"] = -(legs.down.near.tdb_minus_tt - legs.up.near.tdb_minus_tt)
     return terms
+
+
+def _in_order(geometry: Array, terms: dict[str, Array]) -> dict[str, Array]:
+    """Geometry, the built-in terms as they are told, then a user's own."""
+    names = [*(n for n in TERMS if n in terms), *(n for n in terms if n not in TERMS)]
+    return {"geometry": geometry} | {n: terms[n] for n in names}
 
 
 def _displaced(leg: Leg, sense: float) -> list[tuple[str, Array]]:
@@ -281,6 +336,7 @@ def notes(model: Model, query: Query) -> tuple[str, ...]:
     lines = [f"ephemeris {model.ephemeris.name}: {first} to {last}"]
     if isinstance(query.station, Station):
         lines += _orientation_notes(model.earth_orientation, query.when)
+        lines += _geocentre_notes(query.station, model)
     if isinstance(query.reflector, Reflector):
         note = query.reflector.axes_note(model.ephemeris.name)
         lines += [note] if note else []
@@ -300,6 +356,12 @@ def _orientation_notes(series: EarthOrientation, when: Epoch) -> list[str]:
         known = _day(MJD_ZERO + series.last_dxdy_mjd)
         lines.append(f"dX and dY are taken as zero: the last published day is {known}")
     return lines
+
+
+def _geocentre_notes(station: Station, model: Model) -> list[str]:
+    """Said where ocean loading is in use and may lack the motion of the geocentre."""
+    ocean = None if "ocean_loading" in model.omit else station.ocean_loading
+    return [] if ocean is None or ocean.centre_of_mass else [geocentre(station)[1]]
 
 
 def _day(jd: float) -> str:

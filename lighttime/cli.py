@@ -11,10 +11,11 @@ from typing import Final, NoReturn
 import lighttime.commands.coverage as coverage_command
 import lighttime.commands.range as range_command
 import lighttime.commands.scales as scales_command
+import lighttime.commands.station as station_command
 from lighttime.errors import LighttimeError
 from lighttime.version import __version__
 
-COMMANDS: Final = (range_command, scales_command, coverage_command)
+COMMANDS: Final = (range_command, scales_command, coverage_command, station_command)
 """Modules with ``add(subparsers)``, which sets the default ``run``, and ``run(arguments)``."""
 
 REFUSED, INTERRUPTED, BROKEN_PIPE = 2, 130, 141

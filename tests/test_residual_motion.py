@@ -73,7 +73,7 @@ def test_nothing_beyond_its_ends(when: str) -> None:
     assert str(caught.value).startswith(f"when is '{when}")
     assert (
         "allowed: 2020-01-01T00:00:00.000 to 2020-01-05T00:00:00.000 UTC, "
-        "the residual motion of the station (a slow landslide)" in str(caught.value)
+        "the residual motion of the station: a slow landslide" in str(caught.value)
     )
 
 

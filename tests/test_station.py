@@ -10,6 +10,7 @@ import erfa
 import numpy as np
 import pytest
 from ocean_case import AMPLITUDES_M, DISPLACEMENTS_M, PHASES_DEG, ROWS
+from sinex_case import HILL, MESA, blocks, written
 
 import lighttime as lt
 from lighttime.earth import alone
@@ -205,13 +206,15 @@ def test_sources() -> None:
     ("centre_of_mass", "said"),
     [(True, "contained in the"), (False, "not contained in the"), (None, "do not say whether")],
 )
-def test_the_geocentre_is_told_of(centre_of_mass: bool | None, said: str) -> None:
+def test_the_geocentre_is_told_of(model: lt.Model, centre_of_mass: bool | None, said: str) -> None:
     ocean = OceanLoading(AMPLITUDES_M, PHASES_DEG, "a model", centre_of_mass)
     station = lt.Station("Hilltop", HILLTOP.xyz_m, ocean_loading=ocean)
     assert said in station.displacement_source("ocean_loading")
     assert said in alone.geocentre(station)[1]
     assert "centre of mass of the whole Earth" in alone.geocentre(HILLTOP)[0]
     assert "not modelled, up to 1 cm" in alone.geocentre(HILLTOP)[1]
+    notes = " ".join(model.round_trip(NIGHT[0], station, APOLLO_15).notes)
+    assert ("motion of the geocentre" in notes) is not (centre_of_mass is True)
 
 
 # -- conveniences --------------------------------------------------------------------------------
@@ -236,6 +239,38 @@ def test_coefficients_from_files(tmp_path: Path) -> None:
         'name = "Hilltop"\nlatitude_deg = 46.2\nlongitude_deg = 7.1\nheight_m = 2310\n'
     )
     assert lt.Station.from_file(tmp_path / "hilltop.toml") == HILLTOP
+
+
+def test_sinex_and_residual_motion_in_a_station_file(tmp_path: Path) -> None:
+    (tmp_path / "all.snx").write_text(written(blocks([HILL, MESA])))
+    (tmp_path / "motion.csv").write_text(
+        "utc,east_mm,north_mm,up_mm\n2020-01-01,0,0,0\n2021-01-01,1,2,3\n"
+    )
+    path = tmp_path / "hilltop.toml"
+    sinex = 'name = "Hilltop"\n[sinex]\nfile = "all.snx"\nsite = "HILL"\n'
+    motion = '[residual_motion]\ncsv = "motion.csv"\n'
+    for choice in ("solution = 2", 'solution = "2"', 'when = "2005-01-01"'):
+        path.write_text(f"{sinex}{choice}\npoint = 'A'\neccentricity = false\n{motion}")
+        station = lt.Station.from_file(path)
+        assert station.name == "Hilltop"
+        assert station.xyz_m == pytest.approx(HILL.position(2), abs=1e-8)
+        assert "all.snx: HILL A 10002M001, solution 2" in station.source
+        assert station.residual_motion is not None
+    for text, line, message in (
+        (sinex, 2, r"\[sinex\] solution is None; allowed: a solution of HILL or when"),
+        (sinex + "solution = 3\n", 2, r"solution of HILL is '3'"),
+        (sinex + "solution = 2.5\n", 5, r"solution is 2\.5; allowed: text in quotes"),
+        (sinex + "sollution = 2\n", 5, "did you mean solution"),
+        (sinex + 'discontinuities = "none.snx"\n', None, "none.snx: No such file"),
+        (sinex.replace("HILL", "HULL"), 2, "site in all.snx is 'HULL'; .*did you mean HILL"),
+        (sinex.replace("[sinex]", "height_m = 1.0\n[sinex]"), 2, r"height_m and \[sinex\]: a pos"),
+        (sinex + "solution = 2\n[residual_motion]\nfile = 'motion.csv'\n", 7, "key is 'file'"),
+        (sinex + "solution = 2\n[residual_motion]\ncsv = 'none.csv'\n", None, "No such file"),
+    ):
+        path.write_text(text)
+        with pytest.raises(lt.FileError, match=message) as caught:
+            lt.Station.from_file(path)
+        assert caught.value.line == line
 
 
 def test_a_station_is_a_value() -> None:

@@ -128,17 +128,18 @@ def source(station: Station, name: str) -> str:
         what = "series" if name == "residual_motion" else "coefficients"
         said.append(f"{what}: {given.source or 'their source was not given'}")
     if name == "ocean_loading":
-        said.append(_ocean_tide_of_geocentre(station.ocean_loading))
+        said.append(f"motion of the geocentre: {_ocean_tide_of_geocentre(station.ocean_loading)}")
     return "; ".join(said)
 
 
 def geocentre(station: Station) -> tuple[str, ...]:
     """What a station's place is reckoned from, and what moves that; a line for each fact."""
     supplied = "" if station.residual_motion is None else ", but for what the residual motion has"
+    tides = _ocean_tide_of_geocentre(station.ocean_loading)
     return (
         "origin: the centre of mass of the whole Earth, as of the ephemeris; coordinates in the "
         "ITRF refer to its mean over years",
-        f"its motion by ocean tides: {_ocean_tide_of_geocentre(station.ocean_loading)}",
+        f"motion of the geocentre by ocean tides: {tides}",
         f"its motion by seasons and weather, some millimetres: not modelled{supplied}",
     )
 
@@ -149,5 +150,5 @@ def _ocean_tide_of_geocentre(ocean: OceanLoading | None) -> str:
     return {
         True: "contained in the coefficients of ocean loading",
         False: "not contained in the coefficients of ocean loading, up to 1 cm is missing",
-        None: "the coefficients of ocean loading do not say whether it is contained, up to 1 cm",
+        None: "the coefficients of ocean loading do not say whether they contain it, up to 1 cm",
     }[ocean.centre_of_mass]

@@ -139,7 +139,7 @@ class ResidualMotion(_Coefficients):
             raise InputError("tt1 + tt2", days, "a finite Julian date")
         when = Epoch(self._tt.jd1[0], self._tt.jd2[0] + days, "tt").to(self.when.scale)
         first, last = self.coverage
-        of = f" ({self.source})" if self.source else ""
+        of = f": {self.source}" if self.source else ""
         span = f"{first.isoformat(3)} to {last.isoformat(3)} {self.when.scale.upper()}"
         given = f"{when.isoformat(6)} {when.scale.upper()}"
         raise CoverageError("when", given, f"{span}, the residual motion of the station{of}")

@@ -31,8 +31,25 @@
     s2_east_mm = [0.07, 0.09]
     source = "loading service"
 
+    [residual_motion]             # anything else, as a series of east, north and up
+    csv = "hilltop.csv"           # see `lighttime.earth.residual_file`
+
 A name and a position are needed, the rest is optional: a loading that is not given is not
 modelled. Unknown keys are errors, so that a slip of the pen does not go unseen.
+
+Position, velocity, epoch and sigma can come from a SINEX file instead:
+
+.. code-block:: toml
+
+    name = "Hilltop"
+
+    [sinex]
+    file = "stations.snx.gz"      # relative to this file
+    site = "HILL"                 # code, or DOMES number
+    solution = 2                  # or when = "2015-06-01"; not needed if there is only one
+    point = "A"                   # if there are several
+    eccentricity = true           # whether to add it; true if not given
+    discontinuities = "soln.snx"  # another file, if they are not in the first
 """
 
 from __future__ import annotations
@@ -50,6 +67,7 @@ import numpy as np
 
 from lighttime.earth.blq import read_blq
 from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
+from lighttime.earth.residual_motion import ResidualMotion
 from lighttime.earth.station import Station
 from lighttime.errors import FileError, InputError, UnknownNameError
 
@@ -61,7 +79,8 @@ LONGEST_BYTES: Final = 1_000_000
 _MOST_MM = 50.0  # no tide of the atmosphere moves the ground by more
 
 _GEODETIC = ("latitude_deg", "longitude_deg", "height_m")
-_TABLES = ("ocean_loading", "ocean_pole_tide", "atmosphere_loading")
+_TABLES = ("ocean_loading", "ocean_pole_tide", "atmosphere_loading", "residual_motion", "sinex")
+_OF_SINEX = ("file", "site", "solution", "when", "point", "eccentricity", "discontinuities")
 _STATION_KEYS = (
     "name", "xyz_m", *_GEODETIC, "velocity_m_per_yr", "epoch", "sigma_m", "source", *_TABLES,
 )  # fmt: skip
@@ -102,6 +121,7 @@ def read_station(path: str | PathLike[str]) -> Station:
         ("ocean_loading", lambda table: _ocean_loading(table, name)),
         ("ocean_pole_tide", _ocean_pole_tide),
         ("atmosphere_loading", _atmosphere_loading),
+        ("residual_motion", _residual_motion),
     ):
         if key in top.values:
             optional[key] = read(top.table(key))
@@ -109,15 +129,21 @@ def read_station(path: str | PathLike[str]) -> Station:
 
 
 def _placed(top: _Table, name: str, optional: Mapping[str, Any]) -> Station:
-    """The station, from ITRF or from geodetic coordinates: one of the two."""
+    """The station, from ITRF or from geodetic coordinates, or a SINEX file: one of them."""
     given = [key for key in _GEODETIC if key in top.values]
+    if "sinex" in top.values:
+        for key in (*given, "xyz_m", "velocity_m_per_yr", "epoch", "sigma_m"):
+            if key in top.values:
+                raise top.error(key, f"{key} and [sinex]: a position is given once")
+        return _from_sinex(top.table("sinex"), name, optional)
     with top.errors():
         if "xyz_m" in top.values:
             if given:
                 raise top.error(given[0], f"{given[0]} and xyz_m: a position is given once")
             return Station(name, top.numbers("xyz_m", 3), **optional)
         if not given:
-            raise FileError(top.path, None, f"no position: xyz_m, or {', '.join(_GEODETIC)}")
+            known = f"xyz_m, or {', '.join(_GEODETIC)}, or [sinex]"
+            raise FileError(top.path, None, f"no position: {known}")
         latitude, longitude, height = (top.number(key) for key in _GEODETIC)
         return Station.from_geodetic(name, latitude, longitude, height, **optional)
 
@@ -145,6 +171,26 @@ def _atmosphere_loading(table: _Table) -> AtmosphereLoading:
     table.accept((*(key for row in keys for key in row), "source"))
     metres = 1.0e-3 * np.array([[table.numbers(key, 2, _MOST_MM) for key in row] for row in keys])
     return AtmosphereLoading(metres[..., 0], metres[..., 1], table.source)
+
+
+def _residual_motion(table: _Table) -> ResidualMotion:
+    table.accept(("csv",))
+    return ResidualMotion.read(table.path.parent / table.text("csv"))
+
+
+def _from_sinex(table: _Table, name: str, optional: Mapping[str, Any]) -> Station:
+    table.accept(_OF_SINEX)
+    given: dict[str, Any] = {k: table.text(k) for k in ("when", "point") if k in table.values}
+    if "solution" in table.values:
+        number = table.values["solution"]
+        given["solution"] = number if type(number) is int else table.text("solution")
+    if "eccentricity" in table.values:
+        given["eccentricity"] = table.truth("eccentricity")
+    if "discontinuities" in table.values:
+        given["discontinuities"] = table.path.parent / table.text("discontinuities")
+    path = table.path.parent / table.text("file")
+    with table.errors():
+        return Station.from_sinex(path, table.text("site"), name=name, **given, **optional)
 
 
 # -- a table of a TOML file whose values are checked one by one --------------------------------

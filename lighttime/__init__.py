@@ -11,7 +11,10 @@ from functools import cache
 from typing import Any
 
 from lighttime.answer import OneWay, RoundTrip
+from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
+from lighttime.earth.residual_motion import ResidualMotion
 from lighttime.earth.series import EarthOrientation
+from lighttime.earth.sinex import read_sinex
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.errors import (
@@ -25,16 +28,20 @@ from lighttime.errors import (
 )
 from lighttime.model import Model
 from lighttime.moon.reflector import Reflector, reflector, reflectors
+from lighttime.partials import Parameter, Partials
 from lighttime.path.ends import Trajectory
 from lighttime.path.troposphere import Weather
 from lighttime.terms import TERMS
 from lighttime.timescales import Epoch
+from lighttime.user_terms import DelayTerm, Ray
 from lighttime.version import __version__
 
 __all__ = [
     "TERMS",
+    "AtmosphereLoading",
     "ConvergenceError",
     "CoverageError",
+    "DelayTerm",
     "EarthOrientation",
     "Ephemeris",
     "Epoch",
@@ -43,8 +50,14 @@ __all__ = [
     "InputError",
     "LighttimeError",
     "Model",
+    "OceanLoading",
+    "OceanPoleTide",
     "OneWay",
+    "Parameter",
+    "Partials",
+    "Ray",
     "Reflector",
+    "ResidualMotion",
     "RoundTrip",
     "Station",
     "Trajectory",
@@ -52,6 +65,7 @@ __all__ = [
     "Weather",
     "__version__",
     "one_way",
+    "read_sinex",
     "reflector",
     "reflectors",
     "round_trip",

@@ -27,6 +27,7 @@ from lighttime.query import Index, Query
 from lighttime.tables import Tables
 from lighttime.terms import omitted
 from lighttime.timescales import Epoch
+from lighttime.user_terms import DelayTerm, Ray, delay_terms
 from lighttime.vectors import Array
 
 BLOCK = 8192
@@ -53,6 +54,8 @@ class Model:
         Love and Shida number of degree 2 of the Moon's solid tide.
     solar_bending : bool
         Moyer's extra term for the bending of the ray in the Sun's delay.
+    delays : DelayTerm objects
+        Delay terms of one's own.
 
     Raises
     ------
@@ -76,6 +79,7 @@ class Model:
     moon_h2: float = 0.0476
     moon_l2: float = 0.0107
     solar_bending: bool = False
+    delays: tuple[DelayTerm, ...] | Iterable[DelayTerm] = ()
 
     _tables: ClassVar[Tables]  # one of its own for each model; no field, since no choice
 
@@ -85,7 +89,8 @@ class Model:
             put(self, "ephemeris", Ephemeris.default())
         if self.earth_orientation is None:
             put(self, "earth_orientation", EarthOrientation.bundled())
-        put(self, "omit", omitted(self.omit))
+        put(self, "delays", delay_terms(self.delays))
+        put(self, "omit", omitted(self.omit, [term.name for term in self.delays]))
         for name in ("gamma", "moon_h2", "moon_l2"):
             value = getattr(self, name)
             if not np.isfinite(value):
@@ -207,8 +212,12 @@ class Model:
 
     def solve(self, query: Query) -> Legs:
         """Both legs of a block of epochs with every intermediate value (for maintainers)."""
-        _, near, far, delays = self._ends(query)
-        return solve_round_trip(
+        return self.solve_in_frame(query)[1]
+
+    def solve_in_frame(self, query: Query) -> tuple[EarthFrame, Legs]:
+        """The same, with the working frame of its events."""
+        frame, near, far, delays = self._ends(query)
+        return frame, solve_round_trip(
             near, far, np.zeros(query.size), query.tag, delays(True), delays(False),
             query.guess_s, query.turnaround_s,
         )  # fmt: skip
@@ -262,6 +271,9 @@ class Model:
                 late = gravity_delays(frame, near, far, self.gamma, self._omit, self.solar_bending)
                 if query.weather is not None and "troposphere" not in self._omit:
                     late["troposphere"] = self._troposphere(query, query.weather, near, far, upward)
+                for term in self.delays:
+                    if term.name not in self._omit:
+                        late[term.name] = term.seconds(Ray(frame, near, far, upward))
                 return late
 
             return between

@@ -28,8 +28,8 @@ TERMS = (
 )
 
 
-def omitted(omit: Iterable[str]) -> frozenset[str]:
-    """Check names of terms to leave out.
+def omitted(omit: Iterable[str], own: Iterable[str] = ()) -> frozenset[str]:
+    """Check names of terms to leave out; `own` are those of a user's delay terms.
 
     Raises
     ------
@@ -39,9 +39,10 @@ def omitted(omit: Iterable[str]) -> frozenset[str]:
         For ``"geometry"``, without which there is no range.
     """
     names = frozenset((omit,) if isinstance(omit, str) else omit)
+    known = (*TERMS, *own)
     for name in sorted(names):
-        if name not in TERMS:
-            raise UnknownNameError("omit", name, TERMS[1:])
+        if name not in known:
+            raise UnknownNameError("omit", name, known[1:])
         if name == "geometry":
-            raise InputError("omit", name, f"any of {', '.join(TERMS[1:])}")
+            raise InputError("omit", name, f"any of {', '.join(known[1:])}")
     return names

@@ -18,7 +18,7 @@ LEVELS = (
     {"earth", "moon"},
     {"path"},
     {"tables", "query", "gathering", "model", "answer", "worksheet", "printing"}
-    | {"partials", "uncertainty"},
+    | {"partials", "uncertainty", "user_terms", "sigmas"},
     {"crosscheck"},
     {"progress", "commands", "cli", "__main__"},
 )

@@ -148,7 +148,8 @@ def permanent_lunar_tide(
     tensor = permanent_tensor(gm_moon, gm_earth, gm_sun)
     pull: Array = np.tensordot(tensor, up, axes=1)
     along = dot(up, pull)
-    return h2 * (1.5 * along - 0.5 * np.trace(tensor)) * up + 3.0 * l2 * (pull - along * up)
+    radial: Array = h2 * (1.5 * along - 0.5 * np.trace(tensor)) * up
+    return radial + 3.0 * l2 * (pull - along * up)
 
 
 def permanent_tensor(gm_moon: float, gm_earth: float, gm_sun: float) -> Array:

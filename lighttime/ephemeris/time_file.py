@@ -40,7 +40,7 @@ def save(time: TimeEphemeris, path: str | PathLike[str]) -> None:
 def read(path: str | PathLike[str], ephemeris: Ephemeris) -> TimeEphemeris:
     """See `TimeEphemeris.read`."""
     try:
-        with np.load(path, allow_pickle=False) as file:
+        with open(path, "rb") as raw, np.load(raw, allow_pickle=False) as file:
             held = {name: file[name] for name in file.files}
         if str(held["format"]) != FORMAT:
             raise ValueError(f"format {held['format']}")

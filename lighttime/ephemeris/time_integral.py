@@ -357,19 +357,18 @@ def _joined(
 ) -> tuple[Records, float]:
     """One function over all panels, with its value at an instant; and how far half the order is."""
     added = np.concatenate([[0.0], np.cumsum(fine.sum(axis=-1))])
-    series = fine.copy()
-    series[:, 0] += added[:-1]
     needed = np.flatnonzero(np.abs(fine).max(axis=0) > NEGLIGIBLE_S)
-    terms = 1 + int(needed[-1])
-    records = Records(panels.start_jd, panels.days, series[:, None, :terms], name=name)
-    series[:, 0] += value - records.value(records.locate(*where))[0]
+    series = fine[:, None, : 1 + int(needed[-1])].copy()
+    series[:, 0, 0] += added[:-1]
+    records = Records(panels.start_jd, panels.days, series, name=name)
+    series[:, 0, 0] += value - records.value(records.locate(*where))[0]
+    series.flags.writeable = False
     less = np.concatenate([[0.0], np.cumsum(coarse.sum(axis=-1))])
     lost = added - less
     at = np.interp(where[0] + where[1], panels.start_jd + panels.days * np.arange(lost.size), lost)
     inside = fine[:, : coarse.shape[1]] - coarse
     inside = np.abs(inside).sum(axis=-1) + np.abs(fine[:, coarse.shape[1] :]).sum(axis=-1)
     error = float(np.max(np.abs(lost - at)) + np.max(inside))
-    series.flags.writeable = False
     return records, error
 
 

@@ -18,7 +18,7 @@ from lighttime.ephemeris.time_rate import place_term
 from lighttime.inputs import triple
 from lighttime.moon.libration import principal_axes
 from lighttime.timescales.tcl import TCL_RATE
-from lighttime.vectors import norm
+from lighttime.vectors import dot, norm
 
 Array = NDArray[np.float64]
 
@@ -122,8 +122,10 @@ def tcl_minus_tcg(time: TimeEphemeris, tdb1: ArrayLike, tdb2: ArrayLike) -> Any:
 
     Notes
     -----
-    (TCB - TCG at the geocentre) + v.r/c^2 - (TCB - TCL): the Earth's velocity and the way from
-    the Earth to the Moon carry TCG from the geocentre to the Moon. Source: IAU 2000 B1.5.
+    (TCB - TCG at the geocentre) + v.r/c^2 + (3 w + v^2/2) v.r/c^4 - (TCB - TCL): the Earth's
+    velocity and the way from the Earth to the Moon carry TCG from the geocentre to the Moon.
+
+    Source: IAU 2000 B1.5.
     """
     ephemeris = time.ephemeris
     moon = ephemeris.moon_geocentric(tdb1, tdb2)[0]
@@ -132,7 +134,9 @@ def tcl_minus_tcg(time: TimeEphemeris, tdb1: ArrayLike, tdb2: ArrayLike) -> Any:
     tcl_minus_tt = lunar_clock_minus_tt(time, None, tdb1, tdb2)
     since = (1.0 - TCL_RATE) * _tcb_since_origin(tdb1, tdb2)
     tcg_minus_tt = L_G / (1.0 - L_G) * (since - tcl_minus_tt)  # of TT since the origin
-    seconds = tcl_minus_tt - tcg_minus_tt + place_term(moon, velocity, sun)
+    more = (3.0 * sun + 0.5 * dot(velocity, velocity)) / c**2 + L_B  # r as TCB has it
+    to_moon = dot(velocity, moon) / c**2 * (1.0 + more)
+    seconds = tcl_minus_tt - tcg_minus_tt + to_moon
     return float(seconds) if np.ndim(seconds) == 0 else seconds
 
 

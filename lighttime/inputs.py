@@ -2,22 +2,88 @@
 
 from __future__ import annotations
 
+from typing import Any, Final
+
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from lighttime.errors import InputError
 
-__all__ = ["broadcast_shape", "first_outside", "numbers", "triple", "within"]
+__all__ = [
+    "broadcast_shape",
+    "first_outside",
+    "number",
+    "numbers",
+    "triple",
+    "within",
+    "without_unit",
+]
 
 Array = NDArray[np.float64]
+
+UNITS: Final = {
+    "_m_per_yr": "m / yr",
+    "_hpa": "hPa",
+    "_deg": "deg",
+    "_rad": "rad",
+    "_nm": "nm",
+    "_k": "K",
+    "_m": "m",
+    "_s": "s",
+    "seconds": "s",
+}
+"""What the ending of an input's name says about its unit; of any other ending: no unit."""
+
+
+def without_unit(name: str, value: Any) -> Any:
+    """A value that carries its unit, as an astropy Quantity does, in the unit that `name` says.
+
+    Any other value is returned as it is; of a list or a tuple, each element.
+
+    Raises
+    ------
+    InputError
+        If the unit is one of something else.
+
+    Examples
+    --------
+    >>> from astropy import units
+    >>> float(without_unit("height_m", 2.31 * units.km))
+    2310.0
+    >>> without_unit("pressure_hpa", 770.0)
+    770.0
+    """
+    if isinstance(value, (list, tuple)):
+        carried = any(hasattr(each, "to_value") for each in value)
+        return [without_unit(name, each) for each in value] if carried else value
+    if not (hasattr(value, "to_value") and hasattr(value, "unit")):
+        return value
+    from astropy.units import UnitConversionError, temperature
+
+    unit = next((unit for ending, unit in UNITS.items() if name.endswith(ending)), "")
+    try:
+        return value.to_value(unit, temperature() if unit == "K" else [])
+    except UnitConversionError:
+        allowed = f"a unit that can be converted to {unit}" if unit else "a number without a unit"
+        raise InputError(name, str(value), allowed) from None
 
 
 def numbers(name: str, value: ArrayLike) -> Array:
     """An input as a float64 array; InputError if it holds anything else than numbers."""
     try:
-        return np.asarray(value, dtype=float)
-    except (TypeError, ValueError):
+        return np.asarray(without_unit(name, value), dtype=float)
+    except (TypeError, ValueError) as error:
+        if isinstance(error, InputError):
+            raise
         raise InputError(name, value, "a number or an array of numbers") from None
+
+
+def number(name: str, value: Any) -> float:
+    """One number; InputError if it is anything else."""
+    array = numbers(name, value)
+    if array.ndim:
+        raise InputError(name, value, "one number")
+    return float(array)
 
 
 def triple(name: str, value: ArrayLike) -> tuple[float, float, float]:

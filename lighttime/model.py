@@ -17,6 +17,7 @@ from lighttime.ephemeris import Ephemeris
 from lighttime.ephemeris.frame import EarthFrame
 from lighttime.errors import CoverageError, HorizonError, InputError, UnknownNameError
 from lighttime.gathering import gather
+from lighttime.inputs import number
 from lighttime.moon.motion import ReflectorMotion
 from lighttime.moon.reflector import Reflector
 from lighttime.path.delays import gravity_delays, sine_of_elevation
@@ -227,6 +228,7 @@ class Model:
     ) -> Query:
         if tag not in TAGS:
             raise UnknownNameError("tag", tag, TAGS)
+        wavelength, turn = number("wavelength_nm", wavelength), number("turnaround_s", turn)
         if not np.isfinite(turn) or turn < 0.0:
             raise InputError("turnaround_s", turn, "0 or more seconds")
         for name, end in (("station", near), ("reflector", far)):
@@ -240,7 +242,7 @@ class Model:
         if weather is not None and not isinstance(near, Station):
             raise InputError("weather", weather, "None where no Station is at the end of the ray")
         epoch = Epoch.parse(when)
-        return Query(epoch, near, far, tag, weather, float(wavelength), float(turn))  # type: ignore[arg-type]
+        return Query(epoch, near, far, tag, weather, wavelength, turn)  # type: ignore[arg-type]
 
     def _ends(self, query: Query) -> tuple[EarthFrame, Any, Any, Any]:
         """The working frame, both ends in it, and the delays between them."""

@@ -13,6 +13,7 @@ import numpy as np
 from lighttime.constants import DEGREE, J2000, JULIAN_YEAR
 from lighttime.earth.local import east_north_up, from_geodetic, geodetic
 from lighttime.errors import InputError
+from lighttime.inputs import number, numbers
 from lighttime.vectors import Array
 
 if TYPE_CHECKING:
@@ -130,14 +131,47 @@ class Station:
         InputError
             If a coordinate is out of range.
         """
+        found = []
         for field, value, most in (
             ("latitude_deg", latitude_deg, 90.0),
             ("longitude_deg", longitude_deg, 360.0),
             ("height_m", height_m, HIGHEST_M),
         ):
-            if not abs(float(value)) <= most:
+            found.append(number(field, value))
+            if not abs(found[-1]) <= most:
                 raise InputError(field, value, f"-{most:g} to {most:g}")
-        xyz = from_geodetic(latitude_deg * DEGREE, longitude_deg * DEGREE, height_m)
+        latitude, longitude, height = found
+        xyz = from_geodetic(latitude * DEGREE, longitude * DEGREE, height)
+        return cls(name, _triple("xyz_m", xyz), **more)  # type: ignore[arg-type]
+
+    @classmethod
+    def from_earth_location(cls, name: str, location: Any, **more: object) -> Station:
+        """A station from an astropy `EarthLocation`.
+
+        Parameters
+        ----------
+        name : str
+        location : astropy.coordinates.EarthLocation
+            One place; its geocentric coordinates are taken as those of the ITRF, tide-free.
+        **more
+            The other fields of `Station`.
+
+        Raises
+        ------
+        InputError
+            If it is no `EarthLocation`, several, or not near the surface.
+
+        Examples
+        --------
+        >>> from astropy.coordinates import EarthLocation
+        >>> place = EarthLocation.from_geodetic(7.1, 46.2, 2310.0, ellipsoid="GRS80")
+        >>> print(Station.from_earth_location("Hilltop", place))
+        Hilltop: 46.20000 deg N, 7.10000 deg E, 2310.00 m
+        """
+        if not hasattr(location, "to_geocentric"):
+            raise InputError("location", location, "an astropy EarthLocation")
+        geocentric = location.to_geocentric()
+        xyz = [number(f"{axis}_m", v) for axis, v in zip("xyz", geocentric, strict=True)]
         return cls(name, _triple("xyz_m", xyz), **more)  # type: ignore[arg-type]
 
     @staticmethod
@@ -328,8 +362,8 @@ class Station:
         return source(self, name)
 
 
-def _triple(field: str, value: object) -> Triple:
-    array = np.asarray(value, dtype=float)
+def _triple(field: str, value: Any) -> Triple:
+    array = numbers(field, value)
     if array.shape != (3,):
         raise InputError(field, value, "three numbers")
     if not np.all(np.isfinite(array)):

@@ -10,6 +10,7 @@ import numpy as np
 from numpy.typing import ArrayLike
 
 from lighttime.errors import InputError
+from lighttime.inputs import without_unit
 from lighttime.timescales import twopart
 from lighttime.timescales.inputs import Place, Rotation
 from lighttime.timescales.leapseconds import utc_days
@@ -191,6 +192,7 @@ class Epoch:
             in_tai = self.to("tai", earth_orientation=earth_orientation)
             moved = in_tai.shift(seconds, rest_s)
             return moved.to(self.scale, earth_orientation=earth_orientation)
+        seconds = without_unit("seconds", seconds)
         if not (np.all(np.isfinite(seconds)) and np.all(np.isfinite(rest_s))):
             raise InputError("seconds", seconds, "finite numbers")
         try:

@@ -79,8 +79,8 @@ class Blocks:
         """Read the blocks with these titles."""
         blocks = cls(path)
         for title, line, text in records(path, titles):
+            blocks.titles.add(title)
             if text.strip():
-                blocks.titles.add(title)
                 blocks._take(title, line, text)
         return blocks
 

@@ -47,7 +47,8 @@ def records(path: Path, wanted: Collection[str]) -> Iterator[tuple[str, int, str
     Yields
     ------
     title, number, text
-        Title of the block (`HEADER` for the first line), number of the line, the line.
+        Title of the block (`HEADER` for the first line), number of the line, the line; and
+        empty text where a block begins, for it may have no lines.
 
     Raises
     ------
@@ -79,6 +80,8 @@ def records(path: Path, wanted: Collection[str]) -> Iterator[tuple[str, int, str
                 raise FileError(path, number, f"a second block {name}")
             title, opened, keep = name, number, name in wanted
             seen.add(name)
+            if keep:
+                yield title, number, ""
         elif first == b"-":
             name = raw[1:].decode("latin-1").strip()
             if name != title or not title:

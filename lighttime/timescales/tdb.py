@@ -147,10 +147,10 @@ def _rounded_off(tdb1: Array, tdb2: Array) -> Array:
     amplitude, rate, phase = _ANNUAL
     days, lost_days = two_sum(tdb1 - J2000, tdb2)
     millennia = days / _MILLENNIUM
-    product, lost_product = two_product(millennia, np.float64(_MILLENNIUM))
+    product, lost_product = two_product(millennia, np.asarray(_MILLENNIUM))
     lost_time = ((days - product) - lost_product + lost_days) / _MILLENNIUM
-    turned, lost_turned = two_product(millennia, np.float64(rate))
-    argument, lost_argument = two_sum(turned, np.float64(phase))
+    turned, lost_turned = two_product(millennia, np.asarray(rate))
+    argument, lost_argument = two_sum(turned, np.asarray(phase))
     lost = lost_turned + lost_argument + rate * lost_time
     return amplitude * np.cos(argument) * lost
 

@@ -11,23 +11,14 @@ from lighttime.earth.station import Station
 from lighttime.ephemeris.frame import EarthFrame
 from lighttime.model import Model
 from lighttime.moon.reflector import Reflector
-from lighttime.partials.leg import LegSlopes, leg_slopes
+from lighttime.partials.leg import leg_slopes
+from lighttime.partials.motion import Motion
 from lighttime.partials.reflector_end import ReflectorEnd
+from lighttime.partials.side import Side
 from lighttime.partials.station_end import StationEnd
 from lighttime.path.legs import Leg, Legs
 from lighttime.query import Query
 from lighttime.vectors import Array
-
-
-@dataclass(frozen=True, eq=False)
-class Side:
-    """One leg: its slopes, its ends, and what a second more on it adds to the round trip."""
-
-    leg: Leg
-    slopes: LegSlopes
-    response: Array
-    station: StationEnd | None
-    reflector: ReflectorEnd | None
 
 
 @dataclass(frozen=True, eq=False)
@@ -57,15 +48,9 @@ class Block:
     @cached_property
     def sides(self) -> tuple[Side, Side]:
         """The way up and the way down."""
-        up, down = (
-            self._side(leg, response, upward)
-            for leg, response, upward in zip(
-                (self.legs.up, self.legs.down), self.legs.response(), (True, False), strict=True
-            )
-        )
-        return up, down
+        return self._side(self.legs.up, True), self._side(self.legs.down, False)
 
-    def _side(self, leg: Leg, response: Array, upward: bool) -> Side:
+    def _side(self, leg: Leg, upward: bool) -> Side:
         model, query = self.model, self.query
         omit: Any = model.omit
         slopes = leg_slopes(model, query, leg, upward)
@@ -75,12 +60,22 @@ class Block:
             station = StationEnd(query.station, leg.near, slopes, clock, omit)
         if isinstance(query.reflector, Reflector):
             reflector = ReflectorEnd(model, query.reflector, leg.far, slopes)
-        return Side(leg, slopes, response, station, reflector)
+        return Side(leg, slopes, station, reflector)
+
+    @cached_property
+    def motion(self) -> Motion:
+        """How fast the legs change."""
+        return Motion.of(*self.sides)
+
+    @cached_property
+    def response(self) -> tuple[Array, Array]:
+        """What a second more on either leg adds to the round trip."""
+        return self.motion.response(self.legs.tag)
 
     def total(self, of_side: Callable[[Side], Array]) -> Array:
         """The round trip's derivative from that of each leg with the events held."""
-        up, down = self.sides
-        return up.response * of_side(up) + down.response * of_side(down)
+        up, down = (of_side(side) * r for side, r in zip(self.sides, self.response, strict=True))
+        return up + down
 
     def clock(self, of_end: Callable[[StationEnd], Array]) -> Array:
         """What the clock adds: no leg is longer by it, and so nothing responds."""

@@ -14,8 +14,9 @@ from lighttime.constants import ARCSECOND, EARTH_ROTATION_RATE, MILLIARCSECOND, 
 from lighttime.earth.loading import ocean_pole_tide_loading
 from lighttime.earth.station import Station
 from lighttime.earth.tides import pole_tide
-from lighttime.partials.block import Block, Side
+from lighttime.partials.block import Block
 from lighttime.partials.geodetic import geodetic_slopes
+from lighttime.partials.side import Side
 from lighttime.partials.station_end import StationEnd
 from lighttime.vectors import Array, column, cross, dot
 

@@ -12,8 +12,9 @@ from lighttime.errors import InputError, UnknownNameError
 from lighttime.model import Model
 from lighttime.moon.reflector import Reflector
 from lighttime.partials import ground, moon, path
-from lighttime.partials.block import Block, Side
+from lighttime.partials.block import Block
 from lighttime.partials.ground import Slopes
+from lighttime.partials.side import Side
 from lighttime.query import Query
 from lighttime.user_terms import DelayTerm, Ray
 from lighttime.vectors import Array

@@ -103,7 +103,8 @@ def _air(
     """Slopes of the delay in the air; by zenith, by the far position, by the velocity.
 
     The delay depends on the directions through the sine of the elevation, up . n with n the
-    direction of the ray as the moving station sees it: n = unit(ray - beta) but for beta^2.
+    direction of the ray as the moving station sees it: unit(ray - (1 - beta.ray/2) beta), but for
+    beta^3. (What is of first order in beta is opposite on both legs, so that the second counts.)
     """
     station = query.station
     sense = 1.0 if upward else -1.0
@@ -116,4 +117,6 @@ def _air(
     seconds_per_sine = air.sine / c
     across = (seconds_per_sine / length) * (leg.near.up - sine * n)
     turn = (across - outward * dot(outward, across)) / leg.distance
-    return air, seconds_per_sine * n, turn, -sense * across / c
+    ray, beta, by_seen = leg.direction, leg.near.velocity / c, sense * across
+    by_beta = 0.5 * dot(beta, by_seen) * ray - (1.0 - 0.5 * dot(beta, ray)) * by_seen
+    return air, seconds_per_sine * n, turn, by_beta / c

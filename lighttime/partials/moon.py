@@ -6,9 +6,10 @@ from collections.abc import Callable
 
 import numpy as np
 
-from lighttime.partials.block import Block, Side
+from lighttime.partials.block import Block
 from lighttime.partials.ground import Slopes, xyz
 from lighttime.partials.reflector_end import ReflectorEnd
+from lighttime.partials.side import Side
 from lighttime.vectors import Array, dot, norm
 
 

@@ -7,10 +7,10 @@ import numpy as np
 from lighttime.answer import RoundTrip
 from lighttime.constants import SPEED_OF_LIGHT
 from lighttime.moon.tide import lunar_tide, permanent_lunar_tide
-from lighttime.partials.block import Block, Side
+from lighttime.partials.block import Block
 from lighttime.partials.ground import Slopes, xyz
-from lighttime.partials.rate import epoch_slope
 from lighttime.partials.reflector_end import ReflectorEnd
+from lighttime.partials.side import Side
 from lighttime.path.delays import GRAVITY_TERMS
 from lighttime.vectors import Array, column, dot, norm
 
@@ -22,6 +22,7 @@ def earth_velocity(block: Block) -> Slopes:
 
     Positions at the tagged epoch are held, and TDB - TT, which comes from a series of time.
     """
+    gm_sun = block.model.ephemeris.gm("sun")
 
     def row(side: Side) -> Array:
         leg, slopes = side.leg, side.slopes
@@ -33,10 +34,12 @@ def earth_velocity(block: Block) -> Slopes:
         for body in ("earth", "moon"):
             if body in leg.delays:
                 total = total - leg.direction * leg.delays[body] / c
-        if side.station is not None and "station_contraction" not in side.station.omit:
-            total = total + _contraction_by_velocity(
-                near.ladder["gcrs_m"], near.earth_velocity, slopes.near
-            )
+        if side.station is not None:
+            total = total + side.station.by_sun(gm_sun) * -near.seconds
+            if "station_contraction" not in side.station.omit:
+                total = total + _contraction_by_velocity(
+                    near.ladder["gcrs_m"], near.earth_velocity, slopes.near
+                )
         if side.reflector is not None and "reflector_contraction" not in block.model.omit:
             total = total + _contraction_by_velocity(
                 far.ladder["icrs_m"], far.moon_velocity, slopes.far
@@ -53,7 +56,7 @@ def _contraction_by_velocity(r: Array, v: Array, row: Array) -> Array:
 
 def epoch(block: Block) -> Slopes:
     """The tagged epoch."""
-    return {"epoch_s": epoch_slope(block)}
+    return {"epoch_s": block.motion.by_epoch(block.legs.tag)}
 
 
 def gamma(block: Block) -> Slopes:

@@ -18,7 +18,7 @@ from lighttime.earth.motion import StationEvent
 from lighttime.earth.station import Station
 from lighttime.partials.leg import LegSlopes
 from lighttime.partials.tide import Tide, source
-from lighttime.vectors import Array, column, cross, dot
+from lighttime.vectors import Array, column, cross, dot, norm
 
 c = SPEED_OF_LIGHT
 
@@ -109,6 +109,18 @@ class StationEnd:
     def clock_by_place(self) -> Array:
         """What the clock adds to the range by its place: TDB - TT has the term V.r/c^2."""
         return self.clock / c**2 * self.event.earth_velocity
+
+    def by_sun(self, gm_sun: float) -> Array:
+        """By the geocentric position of the Sun, through the tide and the contraction."""
+        sun = self.event.ladder["sun_geocentric_m"]
+        distance = norm(sun)
+        total = np.zeros_like(sun)
+        if self.tide is not None:
+            total = self.tide.by_source(self.by_gcrs, 1, distance)
+        if "station_contraction" not in self.omit:
+            along = dot(self.event.ladder["gcrs_m"], self.slopes.near)
+            total = total + (along * gm_sun / c**2 / distance**3) * sun
+        return total
 
     def by_itrf(self, row: Array) -> Array:
         """A row along GCRS axes as one along ITRF axes."""

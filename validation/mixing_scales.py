@@ -104,7 +104,7 @@ def rows() -> list[tuple[str, float, float | None]]:
         (
             "the answer counted in TCB, not in TDB",
             mm(L_B * ranges.seconds),
-            L_B * longest * c * 500,
+            6250.0,
         ),
         ("ephemeris read at TT, not at TDB", mm(ranges.moon_moves(tdb_tt)), None),
         ("TDB of the geocentre, not of the station", mm(ranges.moon_moves(daily)), None),

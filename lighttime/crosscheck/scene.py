@@ -193,7 +193,8 @@ class Scene:
         for event, to_gcrs in ((self.t1, self.to_gcrs1), (self.t3, self.to_gcrs3)):
             xp, yp = event.ladder["xp_rad"], event.ladder["yp_rad"]
             axis = np.stack([xp, -yp, np.ones_like(xp)])  # of rotation, in the ITRF
-            tilt = np.stack(np.broadcast_arrays(-dyp, -dxp, self.zero))
+            ours, theirs = rotation.polar_motion(xp, yp), rotation.polar_motion(xp + dxp, yp + dyp)
+            tilt = rotation_vector(rotation.product(rotation.transpose(ours), theirs))
             turns.append(rotation.rotate(to_gcrs, tilt + dera * axis))
         return self.turned(*turns)
 
@@ -298,7 +299,7 @@ class Scene:
         return self.frame.distant(body, event.seconds)[0] - event.earth
 
     def selenocentric(self, body: str) -> Array:
-        """The Sun or the Earth from the centre of the Moon at t2, m."""
+        """The Earth, the Sun or a planet from the centre of the Moon at t2, m."""
         if body == "earth":
             return -self.frame.moon_geocentric(self.t2.seconds)[0]
         return self.frame.distant(body, self.t2.seconds)[0] - self.t2.moon
@@ -325,6 +326,12 @@ def turn(vector: Array, r: Array) -> Array:
     return np.sinc(angle / np.pi) * once + 0.5 * np.sinc(angle / (2.0 * np.pi)) ** 2 * cross(
         vector, once
     )
+
+
+def rotation_vector(matrix: Array) -> Array:
+    """The vector (3, n) of small rotations given as matrices (3, 3, n) that turn vectors."""
+    m = matrix
+    return 0.5 * np.stack([m[2, 1] - m[1, 2], m[0, 2] - m[2, 0], m[1, 0] - m[0, 1]])
 
 
 def replace_sighting(event: Any, shift: Array, up: Array) -> Sighting:

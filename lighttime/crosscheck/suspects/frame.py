@@ -11,14 +11,14 @@ import erfa
 import numpy as np
 
 from lighttime.constants import ARCSECOND, J2000, L_B, L_G
-from lighttime.crosscheck.scene import Scene
+from lighttime.crosscheck.scene import Scene, rotation_vector
 from lighttime.crosscheck.suspects.suspect import Suspect
 from lighttime.crosscheck.suspects.terms import years_since_2000
 from lighttime.crosscheck.suspects.time import AS_DESCRIBED
 from lighttime.earth import rotation, tides
 from lighttime.model import Model
 from lighttime.query import Query
-from lighttime.vectors import Array, cross, norm
+from lighttime.vectors import Array, norm
 
 IGNORED = {1.0: "ignored", 2.0: "with the wrong sign", -1.0: "applied twice"}
 
@@ -62,15 +62,13 @@ def without_s_prime(scene: Scene) -> Array:
 
 
 def celestial_pole_moved(scene: Scene, dx: Array, dy: Array, turned: Any = 0.0) -> Array:
-    """The effect of a changed X, Y and of a rotation about the pole, rad.
-
-    The pole moves without turning about itself: the rotation vector is p x dp.
-    """
+    """The effect of a changed X, Y and of a rotation about the pole, rad."""
     vectors = []
     for event in (scene.t1, scene.t3):
-        p = event.axis
-        dz = -(p[0] * dx + p[1] * dy) / p[2]
-        vectors.append(cross(p, np.stack(np.broadcast_arrays(dx, dy, dz))) + turned * p)
+        x, y = event.ladder["x_rad"], event.ladder["y_rad"]
+        ours, theirs = rotation.celestial_tilt(x, y), rotation.celestial_tilt(x + dx, y + dy)
+        tilt = rotation_vector(rotation.product(theirs, rotation.transpose(ours)))
+        vectors.append(tilt + turned * event.axis)
     return scene.turned(*vectors)
 
 
@@ -111,29 +109,17 @@ def iau_1976_1980(scene: Scene) -> Array:
         rung = event.ladder
         tt, ut1 = (rung["tt1"], rung["tt2"]), (rung["ut1_1"], rung["ut1_2"])
         ahead = erfa.anpm(erfa.gst94(*ut1) - erfa.gst06a(*ut1, *tt))
-        sidereal = np.moveaxis(rotation.turned(ahead), -1, 0)
-        theirs = np.swapaxes(erfa.pnm80(*tt), -1, -2)
-        vectors.append(rotation_vector(theirs @ sidereal @ erfa.pnm06a(*tt)))
+        ours, theirs = (np.moveaxis(m, 0, -1) for m in (erfa.pnm06a(*tt), erfa.pnm80(*tt)))
+        back = rotation.product(rotation.turned(ahead), ours)
+        vectors.append(rotation_vector(rotation.product(rotation.transpose(theirs), back)))
     return scene.turned(*vectors)
-
-
-def rotation_vector(matrix: Array) -> Array:
-    """The vector (3, n) of small rotations given as matrices (n, 3, 3) that turn vectors."""
-    m = matrix
-    return 0.5 * np.stack(
-        [
-            m[..., 2, 1] - m[..., 1, 2],
-            m[..., 0, 2] - m[..., 2, 0],
-            m[..., 1, 0] - m[..., 0, 1],
-        ]
-    )
 
 
 def without_bias(scene: Scene) -> Array:
     """The axes of the ephemeris taken as the mean equator and equinox of J2000.0."""
     bias = np.asarray(erfa.bp06(J2000, 0.0)[0])  # GCRS to mean J2000
     # r_GCRS = B^T r_J2000; without it r_J2000 = B r_GCRS stands in its place
-    vector = np.broadcast_to(rotation_vector(bias[None])[:, :1], (3, scene.size))
+    vector = np.broadcast_to(rotation_vector(bias)[:, None], (3, scene.size))
     return scene.turned(vector, vector)
 
 
@@ -216,9 +202,8 @@ def array_scaled(scene: Scene, factor: float) -> Array:
 def array_in_local_scale(scene: Scene) -> Array:
     """The array's coordinates taken as those of the Moon's own system, unscaled."""
     gm, array = scene.model.ephemeris.gm, scene.reflector
-    potential = sum(
-        (gm(body) / norm(scene.selenocentric(body)) for body in ("sun", "earth")), scene.zero
-    )
+    bodies = ("earth", *scene.frame.distant_bodies)
+    potential = sum((gm(body) / norm(scene.selenocentric(body)) for body in bodies), scene.zero)
     factor = replace(array, scale="local").scale_change(potential) - array.scale_change(potential)
     return scene.moved(at2=scene.lunar(array.xyz_m) * factor)
 

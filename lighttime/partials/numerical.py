@@ -21,7 +21,7 @@ NOISE_S = 2.0e-15
 ENOUGH = 1.0e-6
 """The two differences are to agree to this, as a fraction of the largest of them."""
 
-TRIES = 6
+TRIES = 8
 
 
 @dataclass(frozen=True)
@@ -66,8 +66,8 @@ class Parameter:
         """Derivative of the flat round trips, and a word on how good it is.
 
         Central differences with a step and with half of it. If they disagree by more than the
-        arithmetic explains, the step is too large, and a quarter of it is tried; if they drown
-        in the arithmetic, four times as much.
+        arithmetic explains, the step is too large, and a tenth of it is tried; if they drown in
+        the arithmetic, ten times as much.
 
         Raises
         ------
@@ -89,7 +89,7 @@ class Parameter:
                 )
                 return (4.0 * half - whole) / 3.0, note
             worst = min(worst, apart / size) if size else worst
-            step *= 4.0 if apart <= 4.0 * noise else 0.25
+            step *= 10.0 if apart <= 10.0 * noise else 0.1
         raise InputError(
             f"step of {self.name}",
             self.step,

@@ -8,7 +8,8 @@
 from __future__ import annotations
 
 from functools import cache
-from typing import Any
+from importlib import import_module
+from typing import TYPE_CHECKING, Any
 
 from lighttime.answer import OneWay, RoundTrip
 from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
@@ -35,6 +36,9 @@ from lighttime.terms import TERMS
 from lighttime.timescales import Epoch
 from lighttime.user_terms import DelayTerm, Ray
 from lighttime.version import __version__
+
+if TYPE_CHECKING:
+    from lighttime import exact as exact
 
 __all__ = [
     "TERMS",
@@ -85,3 +89,17 @@ def one_way(when: Any, start: Any, end: Any, **more: Any) -> OneWay:
 @cache
 def _default_model() -> Model:
     return Model()
+
+
+_ON_DEMAND = ("exact",)
+
+
+def __getattr__(name: str) -> Any:
+    """Rooms that bring other libraries with them are imported when they are first asked for."""
+    if name in _ON_DEMAND:
+        return import_module(f"lighttime.{name}")
+    raise AttributeError(f"module 'lighttime' has no attribute {name!r}")
+
+
+def __dir__() -> list[str]:
+    return sorted([*__all__, *_ON_DEMAND])

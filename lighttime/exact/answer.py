@@ -109,7 +109,11 @@ def rungs_of_station(tag: str, event: StationEvent) -> Iterator[tuple[str, Real]
     yield f"{tag}_ut1_jd", earth.ut1
     yield f"{tag}_tdb_jd", event.tdb
     yield f"{tag}_tdb_minus_tt_s", event.tdb_minus_tt
-    yield f"{tag}_ut1_minus_tai_s", earth.pole.ut1_minus_tai
+    yield f"{tag}_series_ut1_minus_tai_s", earth.pole.ut1_minus_tai
+    yield f"{tag}_series_xp_rad", earth.pole.xp
+    yield f"{tag}_series_yp_rad", earth.pole.yp
+    yield f"{tag}_series_dx_rad", earth.pole.dx
+    yield f"{tag}_series_dy_rad", earth.pole.dy
     yield f"{tag}_xp_rad", earth.xp
     yield f"{tag}_yp_rad", earth.yp
     yield f"{tag}_cip_x_rad", earth.cip.x

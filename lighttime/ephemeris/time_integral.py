@@ -42,6 +42,9 @@ Array = NDArray[np.float64]
 SAMPLES = 23
 """In a panel. Every second one gives the integral of half the order, to compare with."""
 
+MARGIN_DAYS = 150.0
+"""Added to a span at both ends: more than the tables of a model reach beyond an epoch."""
+
 RATE_SIGMA = 5e-18
 """One sigma of the mean rate of TDB - TT from one ephemeris (measured between two)."""
 
@@ -90,6 +93,9 @@ class TimeEphemeris:
     ) -> TimeEphemeris:
         """Integrate over a span, extended to 1977 where the constants are fixed.
 
+        Where the ephemeris allows it, some months more are integrated at both ends: tables that
+        are made of it have spans of their own.
+
         Parameters
         ----------
         ephemeris : Ephemeris, optional
@@ -121,7 +127,8 @@ class TimeEphemeris:
                 raise CoverageError(name, value, allowed)
         where, value, origin = _fixed(source, known)
         jd = where[0] + where[1]
-        panels = Panels.over(source, min(low, jd), max(high, jd))
+        early = max(begin, min(low - MARGIN_DAYS, jd))
+        panels = Panels.over(source, early, min(end, max(high + MARGIN_DAYS, jd)))
         distant = mean_potential(source.constants) if asteroids else 0.0
         whole, half = _integrals(source, panels, distant)
         error = 0.0

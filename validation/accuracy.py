@@ -109,8 +109,8 @@ def examine(case: Case) -> Result:
             alone=off(alone["answer_s"][0]),
             tables=off(dense["answer_s"][0]),
             alone_pair=off(alone["answer_s"][0], alone["answer_low_s"][0]),
-            rungs_alone=differences(alone, twin, tagged),
-            rungs_tables=differences(dense, twin, tagged),
+            rungs_alone=differences(alone, twin.worksheet(), tagged),
+            rungs_tables=differences(dense, twin.worksheet(), tagged),
             plain=None if plain is None else off(plain),
             losses={name: s / FEMTOSECOND for name, s in losses(twin).items()},
         )
@@ -140,7 +140,8 @@ def _dense(when: lt.Epoch) -> lt.Epoch:
 
 def _plain(case: Case) -> float | None:
     """By the plain assembly, where it has the same model."""
-    if case.tag != "transmit" or case.station.ocean_loading is not None:
+    usual = case.station.ocean_loading is None and case.array.scale == "tdb"
+    if case.tag != "transmit" or not usual:
         return None
     plain = plain_model(case.late)
     utc = case.when.to("utc", place=case.station, earth_orientation=case.series)

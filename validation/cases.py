@@ -11,7 +11,8 @@ the tag, weather. Five kinds of instants:
 ``midnight``  within 3 seconds of 0h UTC, where a day's tables and the daily values of Earth
               orientation meet
 
-Stations are invented. The Moon is above 10 degrees at each.
+Stations are invented; the last has loading coefficients of every kind. The Moon is above 10
+degrees at each. One array in ten is told in another convention than the rest.
 """
 
 from __future__ import annotations
@@ -19,14 +20,13 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, replace
+from pathlib import Path
 from typing import Any
 
 import erfa
 import numpy as np
 
 import lighttime as lt
-from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
-from lighttime.earth.residual_motion import ResidualMotion
 
 DAY = 86400.0
 FIRST_MJD, END_MJD = 40423, 70172
@@ -45,26 +45,6 @@ LATE_SERIES = (
 """Earth orientation of the years that the bundled series does not reach."""
 
 
-def _loads() -> dict[str, Any]:
-    """Coefficients of every kind; invented, of the size that a station at the shore has."""
-    order = np.arange(11.0)
-    amplitudes = [0.03 * 0.7**order, 0.006 * 0.75**order, 0.005 * 0.72**order]
-    phases = [np.mod(75.0 * order + start, 360.0) - 180.0 for start in (20.0, 140.0, 260.0)]
-    days = [f"{year}-01-01" for year in (1960, 1975, 1990, 2005, 2020, 2035, 2060)]
-    steps = np.arange(len(days), dtype=float)
-    enu_m = 1e-3 * np.stack([np.sin(steps), np.cos(2.0 * steps), 3.0 * np.sin(0.7 * steps)], axis=1)
-    return {
-        "ocean_loading": OceanLoading(np.array(amplitudes), np.array(phases), "invented"),
-        "ocean_pole_tide": OceanPoleTide(-0.21 + 0.13j, 0.05 - 0.02j, -0.03 + 0.04j, "invented"),
-        "atmosphere_loading": AtmosphereLoading(
-            1e-3 * np.array([[0.9, -0.5], [0.1, 0.05], [-0.12, 0.07]]),
-            1e-3 * np.array([[-0.4, 0.6], [0.06, -0.08], [0.1, 0.03]]),
-            "invented",
-        ),
-        "residual_motion": ResidualMotion(lt.Epoch.parse(days), enu_m, "invented"),
-    }
-
-
 def _station(
     name: str,
     latitude_deg: float,
@@ -72,7 +52,6 @@ def _station(
     height_m: float,
     velocity: tuple[float, float, float],
     epoch: float,
-    **loads: Any,
 ) -> lt.Station:
     return lt.Station.from_geodetic(
         name,
@@ -81,7 +60,6 @@ def _station(
         height_m,
         velocity_m_per_yr=velocity,
         epoch=epoch,
-        **loads,
     )
 
 
@@ -93,7 +71,7 @@ STATIONS = (
     _station("Crater", 20.7, -156.3, 3060.0, (-0.0130, 0.0620, 0.0330), 2005.0),
     _station("Fjord", 78.9, 11.9, 40.0, (-0.0140, 0.0070, 0.0100), 2015.0),
     _station("Temple", 35.9, 140.1, 60.0, (-0.0020, -0.0050, -0.0080), 2010.0),
-    _station("Harbour", -33.9, 18.5, 30.0, (-0.0010, 0.0190, 0.0170), 2015.0, **_loads()),
+    lt.Station.from_file(Path(__file__).parent / "reference" / "harbour.toml"),
 )
 
 
@@ -162,11 +140,14 @@ def draw(count: int, seed: int = 19690721) -> list[Case]:
 def _candidate(rng: np.random.Generator, kind: str) -> Case:
     when, tag = _INSTANTS[kind](rng), str(rng.choice(TAGS))
     late = when.jd1 - 2400000.5 > lt.EarthOrientation.bundled().coverage[1] - 2.0
+    array = lt.reflectors()[rng.integers(5)]
+    if kind != "seam" and rng.random() < 0.1:
+        array = replace(array, scale=rng.choice(["tt", "local"]), contains_permanent_tide=True)
     case = Case(
         kind=kind,
         when=when,
         station=STATIONS[rng.integers(len(STATIONS))],
-        array=lt.reflectors()[rng.integers(5)],
+        array=array,
         tag=tag,
         weather=_weather(rng) if rng.random() < 0.6 else None,
         wavelength_nm=float(rng.choice([532.0, 1064.0, 355.0, 694.3])),

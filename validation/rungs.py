@@ -12,8 +12,6 @@ from typing import Any
 import mpmath
 import numpy as np
 
-from lighttime.exact import ExactAnswer
-
 MICROMETRE = 1e-6
 BODIES = (
     "sun",
@@ -62,7 +60,7 @@ def vector(rungs: Mapping[str, Any], name: str, unit: str = "m") -> tuple[Any, A
 
 
 def differences(
-    fast: Mapping[str, Any], twin: ExactAnswer, tagged: str, at: int = 0
+    fast: Mapping[str, Any], exact: Mapping[str, Any], tagged: str, at: int = 0
 ) -> dict[str, float]:
     """Absolute differences by the names in `BARS` and `UNBARRED`; of vectors, their length.
 
@@ -70,14 +68,14 @@ def differences(
     ----------
     fast : mapping
         Worksheet of the fast path.
-    twin : ExactAnswer
+    exact : mapping
+        Worksheet of the twin, or the numbers that it had, as mpf.
     tagged : {"t1", "t2", "t3"}
         The event where the Earth is the origin of the fast path's frame.
     at : int
         Which epoch of `fast`.
     """
     with mpmath.workdps(50):
-        exact = twin.worksheet()
         out = _Largest()
         origin = vector(exact, f"{tagged}_earth")
         for event in ("t1", "t3"):

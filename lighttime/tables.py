@@ -11,6 +11,7 @@ from lighttime.earth.state import SCALARS, StateModel
 from lighttime.earth.station import Station
 from lighttime.ephemeris.bodies import Ephemeris
 from lighttime.ephemeris.piecewise import PiecewiseSeries
+from lighttime.timescales.inputs import Relation
 
 if TYPE_CHECKING:
     from lighttime.model import Model
@@ -21,8 +22,9 @@ MOST_STATIONS = 16
 class Tables:
     """Series of precession-nutation and TDB, and of the state of each station that is used."""
 
-    def __init__(self, ephemeris: Ephemeris) -> None:
-        self.celestial: PiecewiseSeries = celestial_series(ephemeris)
+    def __init__(self, ephemeris: Ephemeris, relation: Relation | None = None) -> None:
+        self.celestial: PiecewiseSeries = celestial_series(ephemeris, relation)
+        self._exact_place = relation is not None
         self._stations: OrderedDict[Station, StateModel] = OrderedDict()
         self._lock = Lock()
 
@@ -32,8 +34,9 @@ class Tables:
             states = self._stations.get(station)
             if states is None:
                 states = StateModel(
-                    station, model.ephemeris, model.earth_orientation, model._omit, self.celestial
-                )
+                    station, model.ephemeris, model.earth_orientation, model._omit,
+                    self.celestial, self._exact_place,
+                )  # fmt: skip
                 self._stations[station] = states
             self._stations.move_to_end(station)
             while len(self._stations) > MOST_STATIONS:

@@ -8,6 +8,7 @@ from lighttime.constants import DAY, DEGREE, J2000, MJD_ZERO
 from lighttime.earth import rotation
 from lighttime.ephemeris.bodies import PLANETS, Ephemeris
 from lighttime.ephemeris.piecewise import EqualSpans, PiecewiseSeries
+from lighttime.timescales.inputs import Relation
 from lighttime.timescales.tdb import tdb_minus_tt
 from lighttime.vectors import Array, norm
 
@@ -21,7 +22,9 @@ MOST_SPANS = 512
 """180 years."""
 
 
-def celestial(ephemeris: Ephemeris, tt1: Array, tt2: Array) -> Array:
+def celestial(
+    ephemeris: Ephemeris, tt1: Array, tt2: Array, relation: Relation | None = None
+) -> Array:
     """What varies over days: precession-nutation, TDB - TT, potential.
 
     Parameters
@@ -30,6 +33,8 @@ def celestial(ephemeris: Ephemeris, tt1: Array, tt2: Array) -> Array:
         For the potential.
     tt1, tt2 : ndarray, shape (n,)
         TT in two parts.
+    relation : TimeEphemeris, optional
+        What TDB - TT is from; the series when not given.
 
     Returns
     -------
@@ -40,7 +45,8 @@ def celestial(ephemeris: Ephemeris, tt1: Array, tt2: Array) -> Array:
     x, y, s = rotation.celestial_pole(tt1, tt2)
     tdb2 = tt2 + _rough_tdb_minus_tt(tt1, tt2) / DAY
     potential = _potential(ephemeris, tt1, tdb2)
-    return np.stack([x, y, s, tdb_minus_tt(tt1, tdb2), potential])
+    difference = tdb_minus_tt if relation is None else relation.tdb_minus_tt
+    return np.stack([x, y, s, difference(tt1, tdb2), potential])
 
 
 def _potential(ephemeris: Ephemeris, tdb1: Array, tdb2: Array) -> Array:
@@ -63,10 +69,10 @@ def _rough_tdb_minus_tt(tt1: Array, tt2: Array) -> Array:
     return rough
 
 
-def celestial_series(ephemeris: Ephemeris) -> PiecewiseSeries:
+def celestial_series(ephemeris: Ephemeris, relation: Relation | None = None) -> PiecewiseSeries:
     """`celestial`, to be asked often."""
 
     def function(tt1: Array, tt2: Array) -> Array:
-        return celestial(ephemeris, tt1, tt2)
+        return celestial(ephemeris, tt1, tt2, relation)
 
     return PiecewiseSeries(function, EqualSpans(MJD_ZERO, SPAN_DAYS), TERMS, MOST_SPANS)

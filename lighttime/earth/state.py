@@ -20,9 +20,10 @@ from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
 from lighttime.ephemeris.bodies import Ephemeris
 from lighttime.ephemeris.piecewise import PiecewiseSeries
+from lighttime.ephemeris.time_rate import place_term
 from lighttime.timescales.scales import tt_to_tai
 from lighttime.timescales.tdb import topocentric
-from lighttime.vectors import Array, norm
+from lighttime.vectors import Array, column, norm
 
 SCALARS = (
     "x", "y", "s", "tdb_minus_tt", "ut1_minus_tai", "xp", "yp",
@@ -85,6 +86,8 @@ class StateModel:
     omit : frozenset of str
     celestial : PiecewiseSeries
         Of `celestial.celestial`.
+    exact_place : bool
+        Whether the station's term of TDB - TT is from the ephemeris too, not from the series.
     """
 
     station: Station
@@ -92,6 +95,7 @@ class StateModel:
     earth_orientation: EarthOrientation
     omit: frozenset[str]
     celestial: PiecewiseSeries
+    exact_place: bool = False
 
     @cached_property
     def names(self) -> tuple[str, ...]:
@@ -124,7 +128,6 @@ class StateModel:
         ut1_2 = tai2 + pole.ut1_tai_s / DAY
         fraction = day_fraction(tai1, ut1_2)
         x, y, s, tdb_tt, potential = self.celestial.at(tt1, tt2, spans)
-        tdb_tt = tdb_tt + topocentric(tt1, tt2 + tdb_tt / DAY, fraction, self.station.xyz_m)
         if "subdaily_rotation" in self.omit:
             dx = dy = dut1 = np.zeros_like(tt2)
         else:
@@ -132,9 +135,14 @@ class StateModel:
         x, y = x + pole.dx_rad, y + pole.dy_rad
         xp, yp, ut1_tai = pole.xp_rad + dx, pole.yp_rad + dy, pole.ut1_tai_s + dut1
         era = rotation.earth_rotation_angle(tai1, tai2 + ut1_tai / DAY)
-        to_itrf = rotation.transpose(
-            rotation.terrestrial_to_celestial(x, y, s, era, xp, yp, tt1, tt2)
-        )
+        to_gcrs = rotation.terrestrial_to_celestial(x, y, s, era, xp, yp, tt1, tt2)
+        to_itrf = rotation.transpose(to_gcrs)
+        if self.exact_place:
+            gcrs = rotation.rotate(to_gcrs, column(self.station.xyz_m, tt2))
+            velocity = self.ephemeris.earth(tt1, tt2 + tdb_tt / DAY)[1]
+            tdb_tt = tdb_tt + place_term(gcrs, velocity, potential)
+        else:
+            tdb_tt = tdb_tt + topocentric(tt1, tt2 + tdb_tt / DAY, fraction, self.station.xyz_m)
         sun, moon = self._sun_and_moon(tt1, tt2 + tdb_tt / DAY)
         potential = potential + self.ephemeris.gm("moon") / norm(moon)
         moved = displacements(

@@ -32,6 +32,7 @@ from lighttime.moon.reflector import Reflector, reflector, reflectors
 from lighttime.partials import Parameter, Partials
 from lighttime.path.ends import Trajectory
 from lighttime.path.troposphere import Weather
+from lighttime.sigmas import Covariance, Uncertainties
 from lighttime.terms import TERMS
 from lighttime.timescales import Epoch
 from lighttime.user_terms import DelayTerm, Ray
@@ -44,6 +45,7 @@ __all__ = [
     "TERMS",
     "AtmosphereLoading",
     "ConvergenceError",
+    "Covariance",
     "CoverageError",
     "DelayTerm",
     "EarthOrientation",
@@ -65,6 +67,7 @@ __all__ = [
     "RoundTrip",
     "Station",
     "Trajectory",
+    "Uncertainties",
     "UnknownNameError",
     "Weather",
     "__version__",

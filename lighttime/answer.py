@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
+from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
@@ -26,6 +27,7 @@ if TYPE_CHECKING:
 
     from lighttime.model import Model
     from lighttime.partials import Parameter, Partials
+    from lighttime.uncertainty import Budget
 
 c = SPEED_OF_LIGHT
 
@@ -229,6 +231,30 @@ class RoundTrip(Answer):
         from lighttime.partials import partials
 
         return partials(self, names)
+
+    @cached_property
+    def budget(self) -> Budget:
+        """The error budget: what every uncertain input contributes, and all of them together.
+
+        Sigmas are those of `Model.uncertainties`, of the station, of the reflector, and of the
+        series of Earth orientation at the date.
+
+        Examples
+        --------
+        >>> import lighttime as lt
+        >>> hilltop = lt.Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
+        >>> answer = lt.round_trip("2020-03-01T19:00:00", hilltop, lt.reflector("Apollo 15"))
+        >>> answer.budget.largest_first[0].name
+        'reflector'
+        """
+        from lighttime.uncertainty import budget
+
+        return budget(self)
+
+    @property
+    def sigma_s(self) -> Any:
+        """One sigma of the round trip, s: the total of `budget`."""
+        return self.budget.total_s
 
     def __str__(self) -> str:
         from lighttime.printing import round_trip_text

@@ -13,8 +13,9 @@ from lighttime.constants import DAY, DEGREE, SPEED_OF_LIGHT
 from lighttime.earth.motion import StationMotion
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
-from lighttime.ephemeris import Ephemeris
+from lighttime.ephemeris import Ephemeris, time_integral
 from lighttime.ephemeris.frame import EarthFrame
+from lighttime.ephemeris.time_integral import TimeEphemeris
 from lighttime.errors import CoverageError, HorizonError, InputError, UnknownNameError
 from lighttime.gathering import gather
 from lighttime.inputs import number
@@ -25,6 +26,7 @@ from lighttime.path.ends import Trajectory, TrajectoryMotion
 from lighttime.path.legs import Legs, solve_one_way, solve_round_trip
 from lighttime.path.troposphere import Weather, slant_delay
 from lighttime.query import Index, Query
+from lighttime.sigmas import Uncertainties
 from lighttime.tables import Tables
 from lighttime.terms import omitted
 from lighttime.timescales import Epoch
@@ -57,6 +59,11 @@ class Model:
         Moyer's extra term for the bending of the ray in the Sun's delay.
     delays : DelayTerm objects
         Delay terms of one's own.
+    uncertainties : Uncertainties
+        How well the inputs are known, for error budgets.
+    tdb : {"series", "integrated"} or TimeEphemeris
+        What TDB - TT is from: the series of Fairhead & Bretagnon, or the orbits of the
+        ephemeris, integrated.
 
     Raises
     ------
@@ -81,6 +88,8 @@ class Model:
     moon_l2: float = 0.0107
     solar_bending: bool = False
     delays: tuple[DelayTerm, ...] | Iterable[DelayTerm] = ()
+    uncertainties: Uncertainties = Uncertainties()  # noqa: RUF009 (it is frozen)
+    tdb: str | TimeEphemeris = "series"
 
     _tables: ClassVar[Tables]  # one of its own for each model; no field, since no choice
 
@@ -97,7 +106,9 @@ class Model:
             if not np.isfinite(value):
                 raise InputError(name, value, "a finite number")
             put(self, name, float(value))
-        put(self, "_tables", Tables(self.ephemeris))
+        if not isinstance(self.uncertainties, Uncertainties):
+            raise InputError("uncertainties", self.uncertainties, "an Uncertainties object")
+        put(self, "_tables", Tables(self.ephemeris, self._relation))
 
     def __reduce__(self) -> tuple[Any, ...]:
         return Model, tuple(getattr(self, f.name) for f in fields(self))  # without the tables
@@ -284,13 +295,23 @@ class Model:
         return frame, near, far, delays
 
     @property
+    def _relation(self) -> TimeEphemeris | None:
+        """What TDB - TT is from; None for the series."""
+        return time_integral.chosen(self.tdb, self.ephemeris)
+
+    @property
     def _omit(self) -> frozenset[str]:
         return self.omit  # type: ignore[return-value]
 
     def _tt(self, query: Query) -> tuple[Array, Array]:
         """The tagged instants, TT in two parts, within the span of the ephemeris."""
         station = query.station if isinstance(query.station, Station) else None
-        tt = query.when.to("tt", place=station, earth_orientation=self.earth_orientation)
+        tt = query.when.to(
+            "tt",
+            place=station,
+            earth_orientation=self.earth_orientation,
+            tdb=self._relation,
+        )
         tt1, tt2 = np.atleast_1d(tt.jd1), np.atleast_1d(tt.jd2)
         first, last = self.ephemeris.coverage
         margin = 10.0 / DAY  # the other events are within seconds

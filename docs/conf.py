@@ -27,13 +27,12 @@ extensions = [
 ]
 exclude_patterns = ["_build", "examples", "figures/*.md"]
 default_role = "py:obj"
-numfig = False
 
 # -- pages -----------------------------------------------------------------------------------------
 
 myst_enable_extensions = ["dollarmath", "colon_fence", "deflist", "substitution"]
 myst_heading_anchors = 3
-myst_substitutions = json.loads((HERE / "figures" / "sizes.json").read_text(encoding="utf-8"))
+myst_substitutions = json.loads((HERE / "figures" / "sizes.json").read_text())["told"]
 """How large each term is, as `figures/sizes.py` found it."""
 
 # -- reference -------------------------------------------------------------------------------------

@@ -2,23 +2,28 @@
 
 from __future__ import annotations
 
+import re
 from typing import Any
 
 from docutils import nodes
 from docutils.utils.math.latex2mathml import tex2mathml
 
 
+def mathml(node: nodes.Element, as_block: bool) -> str:
+    r"""A formula in MathML. The converter knows ``\Bigl`` and not ``\Big``, which look the same."""
+    formula = re.sub(r"\\([bB]igg?)(?![a-zA-Z])", r"\\\1l", node.astext())
+    return tex2mathml(formula, as_block=as_block)
+
+
 def inline(writer: Any, node: nodes.Element) -> None:
     """A formula in a line of text."""
-    writer.body.append(tex2mathml(node.astext(), as_block=False))
+    writer.body.append(mathml(node, as_block=False))
     raise nodes.SkipNode
 
 
 def display(writer: Any, node: nodes.Element) -> None:
     """A formula of its own; wide ones scroll."""
-    writer.body.append(
-        f'<div class="math-display">{tex2mathml(node.astext(), as_block=True)}</div>'
-    )
+    writer.body.append(f'<div class="math-display">{mathml(node, as_block=True)}</div>')
     raise nodes.SkipNode
 
 

@@ -144,8 +144,8 @@ def round_trip(
 
     Notes
     -----
-    t2 - t1 = |x_r(t2) - x_s(t1)|/c + gravity + troposphere, the same for t3 - t2, all in TDB;
-    the answer is (t3 - t1) - [(TDB - TT)(t3) - (TDB - TT)(t1)] at the station.
+    ``t2 - t1 = |x_r(t2) - x_s(t1)|/c + gravity + troposphere``, the same for t3 - t2, all in
+    TDB; the answer is (t3 - t1) - [(TDB - TT)(t3) - (TDB - TT)(t1)] at the station.
 
     Source: Moyer 2000, Formulation for Observed and Computed Values of Deep Space Network Data
     Types for Navigation, 8.3; gravity in the rest frame of each body (`lighttime.exact.gravity`).

@@ -1,0 +1,75 @@
+"""The names that are exported, the names that the reference documents, and no others."""
+
+from __future__ import annotations
+
+import inspect
+import re
+from collections import Counter
+from pathlib import Path
+
+import pytest
+
+import lighttime
+
+REFERENCE = Path(__file__).parent.parent / "docs" / "reference"
+ON_DEMAND = {"exact"}
+"""Rooms that are imported when they are asked for; they have pages of their own."""
+
+
+def text() -> str:
+    return "\n".join(page.read_text(encoding="utf-8") for page in sorted(REFERENCE.glob("*.md")))
+
+
+def documented() -> list[str]:
+    """Names of the first level that have an entry with their docstring."""
+    kinds = "class|function|exception|data|module"
+    return re.findall(rf"^\.\. auto(?:{kinds}):: lighttime\.(\w+)$", text(), re.M)
+
+
+def listed() -> list[str]:
+    """Names in the tables of the index."""
+    index = (REFERENCE / "index.md").read_text(encoding="utf-8")
+    return re.findall(r"^   lighttime\.(\w+)$", index, re.M)
+
+
+def test_every_exported_name_is_documented_once_and_nothing_else() -> None:
+    counts = Counter(documented())
+    assert set(counts) - ON_DEMAND == set(lighttime.__all__)
+    assert {name for name, count in counts.items() if count > 1} == set()
+
+
+def test_the_index_lists_every_documented_name_once() -> None:
+    counts = Counter(listed())
+    assert set(counts) == set(lighttime.__all__) - {"__version__"}
+    assert max(counts.values()) == 1
+
+
+@pytest.mark.parametrize("name", sorted(set(lighttime.__all__) - {"TERMS", "__version__"}))
+def test_every_exported_name_has_a_docstring_of_its_own(name: str) -> None:
+    thing = getattr(lighttime, name)
+    doc = inspect.getdoc(thing)
+    assert doc
+    assert not doc.startswith(f"{name}("), "the signature that a dataclass makes is no docstring"
+
+
+@pytest.mark.parametrize("name", sorted(set(lighttime.__all__) - {"TERMS", "__version__"}))
+def test_public_methods_have_docstrings(name: str) -> None:
+    thing = getattr(lighttime, name)
+    if not inspect.isclass(thing):
+        return
+    for member, value in vars(thing).items():
+        function = getattr(value, "__func__", value)
+        if not member.startswith("_") and (
+            inspect.isfunction(function) or isinstance(value, property)
+        ):
+            assert inspect.getdoc(value), f"{name}.{member}"
+
+
+def test_exported_names_are_in_order() -> None:
+    assert sorted(set(lighttime.__all__)) == sorted(lighttime.__all__)
+    assert set(lighttime.__all__) <= set(dir(lighttime))
+
+
+def test_names_of_terms_have_an_entry() -> None:
+    table = (REFERENCE / "terms.md").read_text(encoding="utf-8")
+    assert re.findall(r"^\| `(\w+)` \|", table, re.M) == list(lighttime.TERMS)

@@ -5,14 +5,14 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from lighttime.crosscheck.suspects import constants, frame, solution, terms, time
-from lighttime.crosscheck.suspects.offsets import offsets
+from lighttime.crosscheck.suspects.offsets import free_offsets
 from lighttime.crosscheck.suspects.suspect import FAMILIES, Suspect
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.model import Model
 from lighttime.moon.reflector import Reflector
 
-__all__ = ["CHOICES", "FAMILIES", "Suspect", "suspects"]
+__all__ = ["CHOICES", "FAMILIES", "Suspect", "all_suspects"]
 
 CHOICES: tuple[Suspect, ...] = (
     *terms.SUSPECTS,
@@ -24,7 +24,7 @@ CHOICES: tuple[Suspect, ...] = (
 """Suspects that are the same for all ranges."""
 
 
-def suspects(
+def all_suspects(
     model: Model,
     stations: Sequence[Station],
     arrays: Sequence[Reflector],
@@ -47,7 +47,7 @@ def suspects(
     --------
     >>> import lighttime as lt
     >>> hilltop = lt.Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
-    >>> everyone = suspects(lt.Model(), [hilltop], [lt.reflector("Apollo 15")])
+    >>> everyone = all_suspects(lt.Model(), [hilltop], [lt.reflector("Apollo 15")])
     >>> len(everyone) > 40
     True
     >>> print(next(s for s in everyone if s.name == "ut1_as_utc"))
@@ -57,7 +57,7 @@ def suspects(
         *CHOICES,
         *terms.absent_terms(model),
         *(constants.other_ephemeris(each) for each in ephemerides),
-        *offsets(
+        *free_offsets(
             [s.name for s in stations],
             [a.name for a in arrays],
             [s.name for s in stations if s.ocean_loading is None],

@@ -175,7 +175,7 @@ TIDES_H = {"M2": 12.4206012, "S2": 12.0, "K1": 23.9344696, "O1": 25.8193417}
 """Periods of the main tides, hours. Source: Doodson 1921."""
 
 
-def offsets(
+def free_offsets(
     stations: Sequence[str],
     arrays: Sequence[str],
     unloaded: Sequence[str],

@@ -1,0 +1,221 @@
+"""Tables of ranges from wherever they come: their columns, by name, and the line of each row."""
+
+from __future__ import annotations
+
+import csv
+import io
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field
+from os import PathLike, fspath
+from typing import Any, TextIO
+
+import numpy as np
+
+from lighttime.errors import FileError, InputError
+
+ALLOWED = (
+    "a path to a CSV or ECSV file, an open text file, an astropy Table, a pandas or polars "
+    "DataFrame, or a mapping of arrays"
+)
+
+DELIMITERS = (",", ";", "\t", "|")
+
+MOST_ROWS = 2_000_000
+"""What is taken at once: it keeps the memory below 1.5 GB."""
+
+
+@dataclass(frozen=True, eq=False)
+class RawTable:
+    """Columns as they were given.
+
+    Attributes
+    ----------
+    source : str
+        Where they come from, for people.
+    columns : mapping of str to array or list
+        All of one length.
+    lines : ndarray of int, shape (n,)
+        What a row is called when something is wrong with it.
+    row_word : str
+        ``"line"`` for files, ``"row"`` (counted from 0) for objects.
+    units : mapping of str to str
+        Those that the table states.
+    wrong : mapping of int to str
+        Rows that could not be taken apart, and why.
+    """
+
+    source: str
+    columns: Mapping[str, Any]
+    lines: Any
+    row_word: str = "row"
+    units: Mapping[str, str] = field(default_factory=dict)
+    wrong: Mapping[int, str] = field(default_factory=dict)
+
+
+def open_table(source: Any) -> RawTable:
+    """Take a table apart into its columns.
+
+    Parameters
+    ----------
+    source : path, text file, astropy Table, DataFrame, or mapping
+        Comments in files begin with ``#``; the first other line names the columns; cells are
+        separated by comma, semicolon, tab, bar or blanks. Decimal text keeps its digits.
+
+    Raises
+    ------
+    FileError
+        If a file cannot be opened or names no columns.
+    InputError
+        If an object is no table.
+    """
+    if isinstance(source, (str, PathLike)):
+        path = fspath(source)
+        try:
+            with open(path, encoding="utf-8-sig", newline="") as file:
+                return _read(file, str(path))
+        except OSError as error:
+            raise FileError(path, None, f"cannot be read: {error.strerror}") from None
+        except UnicodeDecodeError:
+            raise FileError(path, None, "not a text file (UTF-8)") from None
+    if isinstance(source, io.TextIOBase) or hasattr(source, "readline"):
+        return _read(source, str(getattr(source, "name", "table")))
+    if isinstance(source, Mapping):
+        return _columns(type(source).__name__, {str(k): source[k] for k in source})
+    names = getattr(source, "colnames", None)
+    if names is None:
+        names = getattr(source, "columns", None)
+    if names is None or isinstance(source, np.ndarray):
+        given = source if np.size(source) < 10 else f"an object of type {type(source).__name__}"
+        raise InputError("ranges", given, ALLOWED)
+    columns, units = {}, {}
+    for name in names:
+        column = source[name]
+        if getattr(column, "unit", None) is not None and not hasattr(column, "scale"):
+            units[str(name)] = str(column.unit)
+        columns[str(name)] = getattr(column, "value", column) if hasattr(column, "to") and hasattr(
+            column, "unit"
+        ) else column  # fmt: skip
+    return _columns(type(source).__name__, columns, units)
+
+
+def _columns(
+    kind: str, columns: Mapping[str, Any], units: Mapping[str, str] | None = None
+) -> RawTable:
+    arrays: dict[str, Any] = {}
+    for name, values in columns.items():
+        arrays[name] = values if _is_time(values) else _array(name, values)
+    sizes = {name: len(values) for name, values in arrays.items()}
+    if len(set(sizes.values())) > 1:
+        raise InputError("lengths of the columns", sizes, "one length for all")
+    count = next(iter(sizes.values()), 0)
+    if count > MOST_ROWS:
+        raise InputError("ranges", f"a table of {count} rows", too_many())
+    return RawTable(kind, arrays, np.arange(count), "row", units or {})
+
+
+def too_many() -> str:
+    """What to do with a longer table."""
+    return (
+        f"up to {MOST_ROWS} rows at a time (every n-th row of a longer table says as much about "
+        "the choices behind it)"
+    )
+
+
+def _is_time(values: Any) -> bool:
+    """An Epoch or an astropy Time: instants that know their scale."""
+    return hasattr(values, "jd1") and hasattr(values, "scale")
+
+
+def _array(name: str, values: Any) -> Any:
+    if hasattr(values, "to_list") and not hasattr(values, "to_numpy"):
+        values = values.to_list()
+    mask = getattr(values, "mask", None)
+    array = np.asarray(values)
+    if mask is not None and np.any(mask):
+        array = array.astype(object)
+        array[np.asarray(mask)] = None
+    if array.ndim == 0:
+        raise InputError(f"column {name}", values, "an array")
+    if array.ndim != 1:
+        raise InputError(f"column {name}", f"an array of shape {array.shape}", "one dimension")
+    return array
+
+
+# -- text ------------------------------------------------------------------------------------------
+
+
+def _read(file: TextIO, name: str) -> RawTable:
+    comments: list[str] = []
+    numbered: list[tuple[int, str]] = []
+    for number, line in enumerate(file, start=1):
+        text = line.rstrip("\r\n")
+        if text.lstrip().startswith("#"):
+            comments.append(text.lstrip().removeprefix("#").removeprefix(" "))
+        elif text.strip():
+            numbered.append((number, text))
+            if len(numbered) > MOST_ROWS + 1:
+                raise FileError(name, number, f"more rows than {too_many()}")
+    if not numbered:
+        raise FileError(name, None, "empty: no line names the columns")
+    header = _ecsv_header(comments, name)
+    delimiter = header.get("delimiter") or _delimiter(numbered[0][1])
+    head = [cell.strip() for cell in _cells(numbered[0][1], delimiter)]
+    repeated = sorted({c for c in head if head.count(c) > 1})
+    if repeated:
+        raise FileError(name, numbered[0][0], f"more than one column is called {repeated[0]!r}")
+    if _is_number(head[0]) or head[0][:4].isdigit():
+        raise FileError(name, numbered[0][0], f"{head[0]!r} stands where columns are to be named")
+    rows, lines, wrong = _rows(numbered[1:], delimiter, len(head))
+    columns = {column: [row[k] for row in rows] for k, column in enumerate(head)}
+    return RawTable(name, columns, np.array(lines, dtype=int), "line", header["units"], wrong)
+
+
+def _rows(
+    numbered: Iterable[tuple[int, str]], delimiter: str, width: int
+) -> tuple[list[list[str]], list[int], dict[int, str]]:
+    rows, lines, wrong = [], [], {}
+    for number, text in numbered:
+        cells = _cells(text, delimiter)
+        if len(cells) != width:
+            wrong[len(rows)] = f"{len(cells)} cells where {width} columns are named"
+            cells = [""] * width
+        rows.append(cells)
+        lines.append(number)
+    return rows, lines, wrong
+
+
+def _cells(text: str, delimiter: str) -> list[str]:
+    if delimiter == " ":
+        return next(csv.reader([" ".join(text.split())], delimiter=" "), [])
+    return next(csv.reader([text], delimiter=delimiter, skipinitialspace=True), [])
+
+
+def _delimiter(head: str) -> str:
+    counts = {d: head.count(d) for d in DELIMITERS}
+    best = max(DELIMITERS, key=lambda d: counts[d])
+    if counts[best]:
+        return best
+    return " " if " " in head.strip() else ","
+
+
+def _is_number(text: str) -> bool:
+    try:
+        float(text)
+    except ValueError:
+        return False
+    return True
+
+
+def _ecsv_header(comments: list[str], name: str) -> dict[str, Any]:
+    """Units and delimiter of an ECSV header; nothing for plain CSV."""
+    if not comments or not comments[0].startswith("%ECSV"):
+        return {"units": {}}
+    from astropy.table.meta import get_header_from_yaml
+
+    try:
+        header = get_header_from_yaml([line for line in comments[1:] if not line.startswith("%")])
+    except Exception as error:  # whatever its YAML reader raises
+        raise FileError(name, None, f"its ECSV header cannot be read: {error}") from None
+    described = header.get("datatype", [])
+    units = {d["name"]: str(d["unit"]) for d in described if "unit" in d and "name" in d}
+    return {"units": units, "delimiter": header.get("delimiter", " ")}

@@ -24,6 +24,31 @@ __all__ = [
 MOST_NAMES = 40
 """So many known names are told; of more only the first."""
 
+LONGEST_SHOWN = 400
+"""Characters of a value that are told; the rest is counted."""
+
+LONGEST_NEAR, MOST_NEAR = 40, 20_000
+"""So long a name, and among so many, is looked for near ones: it takes seconds at most."""
+
+
+def shown(value: Any) -> str:
+    """A value as Python writes it, as far as that is possible and of use.
+
+    Examples
+    --------
+    >>> shown("noon")
+    "'noon'"
+    >>> shown("9" * 1000).count("9"), shown(10**5000)
+    (399, 'of type int and cannot be shown')
+    """
+    try:
+        text = repr(value)
+    except Exception:  # of a class of anybody's, or an integer of thousands of digits
+        return f"of type {type(value).__name__} and cannot be shown"
+    if len(text) <= LONGEST_SHOWN:
+        return text
+    return f"{text[:LONGEST_SHOWN]}... ({len(text)} characters)"
+
 
 class LighttimeError(Exception):
     """The root of all errors raised on purpose by this library."""
@@ -53,7 +78,7 @@ class InputError(LighttimeError, ValueError):
         self.name = name
         self.value = value
         self.allowed = allowed
-        super().__init__(f"{name} is {value!r}; allowed: {allowed}")
+        super().__init__(f"{name} is {shown(value)}; allowed: {allowed}")
 
     def __reduce__(self) -> tuple[Any, ...]:
         return type(self), (self.name, self.value, self.allowed)
@@ -72,7 +97,7 @@ class UnknownNameError(InputError, LookupError):
 
     def __init__(self, name: str, value: str, known: Iterable[str]) -> None:
         self.known = tuple(known)
-        near = difflib.get_close_matches(str(value), self.known, n=3, cutoff=0.5)
+        near = _near(value, self.known) if isinstance(value, str) else []
         hint = f"did you mean {' or '.join(near)}? " if near else ""
         names = self.known
         if len(names) > MOST_NAMES:
@@ -81,6 +106,14 @@ class UnknownNameError(InputError, LookupError):
 
     def __reduce__(self) -> tuple[Any, ...]:
         return type(self), (self.name, self.value, self.known)
+
+
+def _near(value: str, known: tuple[str, ...]) -> list[str]:
+    """Up to three names that resemble a value."""
+    if len(value) > LONGEST_NEAR:
+        return []
+    short = [name for name in known[:MOST_NEAR] if len(name) <= LONGEST_NEAR]
+    return difflib.get_close_matches(value, short, n=3, cutoff=0.5)
 
 
 class FileError(LighttimeError, ValueError):

@@ -134,7 +134,7 @@ ROW = ROW_LINES[3]  # of ONSALA: amplitudes south
         (FILE + "  bell\x07\n" + ROWS, len(LINES) + 1, "unprintable"),
         (HEADER, None, "no station in it"),
         ("", None, "no station in it"),
-        (FILE + " " * 600 + "\n", len(LINES) + 1, "a line of more than 512 characters"),
+        (FILE + " " * 600 + "\n", len(LINES) + 1, "a line of more than 512 bytes"),
     ],
 )
 def test_broken_file_is_refused_as_a_whole(

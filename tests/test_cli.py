@@ -475,7 +475,7 @@ AT = f"range --at {EVENING[0]}"
         (f"{AT} --place a,96.2,7.1,9 --array apollo15", "latitude_deg is 96.2; allowed: -90 to 90"),
         (f"{AT} --place a,nan,7.1,9 --array apollo15", "latitude_deg is nan; allowed: -90 to 90"),
         (f"{AT} --place a,6,7,2e6 --array apollo15", "height_m is 2000000.0; allowed: -100000"),
-        (f"{AT} --station none.toml --array apollo15", "none.toml: No such file"),
+        (f"{AT} --station none.toml --array apollo15", "none.toml: cannot be read: No such file"),
         (f"{AT} {WHERE} --omit sun_gravty", "did you mean sun_gravity"),
         (f"{AT} {WHERE} --omit geometry", "omit is 'geometry'; allowed: any of sun_gravity"),
         (f"{AT} {WHERE} --pressure-hpa 765", "--temperature-k is missing: --pressure-hpa, --te"),

@@ -12,7 +12,7 @@ import lighttime
 
 ROOT = Path(lighttime.__file__).parent
 LEVELS = (
-    {"errors", "constants", "inputs", "vectors", "terms", "version", "data"},
+    {"errors", "constants", "inputs", "vectors", "terms", "textfile", "version", "data"},
     {"timescales"},
     {"ephemeris"},
     {"earth", "moon"},

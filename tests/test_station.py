@@ -261,7 +261,7 @@ def test_sinex_and_residual_motion_in_a_station_file(tmp_path: Path) -> None:
         (sinex + "solution = 3\n", 2, r"solution of HILL is '3'"),
         (sinex + "solution = 2.5\n", 5, r"solution is 2\.5; allowed: text in quotes"),
         (sinex + "sollution = 2\n", 5, "did you mean solution"),
-        (sinex + 'discontinuities = "none.snx"\n', None, "none.snx: No such file"),
+        (sinex + 'discontinuities = "none.snx"\n', None, "none.snx: cannot be read: No such file"),
         (sinex.replace("HILL", "HULL"), 2, "site in all.snx is 'HULL'; .*did you mean HILL"),
         (sinex.replace("[sinex]", "height_m = 1.0\n[sinex]"), 2, r"height_m and \[sinex\]: a pos"),
         (sinex + "solution = 2\n[residual_motion]\nfile = 'motion.csv'\n", 7, "key is 'file'"),

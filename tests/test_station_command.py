@@ -109,7 +109,7 @@ def test_stations_of_a_sinex_file(run: Run) -> None:
         ("all.snx --site HILL", "solution is None; allowed: a solution of HILL or when"),
         ("hilltop.toml --site HILL", "--site is 'HILL'; allowed: only with a SINEX file"),
         ("hilltop.toml --marker", "--marker is True; allowed: only with a SINEX file"),
-        ("none.toml", "none.toml: No such file"),
+        ("none.toml", "none.toml: cannot be read: No such file"),
         ("hilltop.toml --at 2022-01-01", "the residual motion of the station"),
         ("hilltop.toml --at soon", "--at is 'soon'"),
         ("hilltop.toml --plot a.png", "--at is None; allowed: an epoch, at which the month"),

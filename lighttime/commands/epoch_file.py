@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import csv
+import io
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from contextlib import suppress
 from dataclasses import dataclass
+from functools import partial
 from itertools import islice
 from pathlib import Path
 from typing import Any, Final, NamedTuple, TextIO
@@ -14,11 +16,18 @@ import numpy as np
 
 from lighttime.errors import FileError, InputError, LighttimeError, UnknownNameError
 from lighttime.path.troposphere import Weather
+from lighttime.textfile import opened
 from lighttime.timescales import Epoch
 from lighttime.timescales.text import parse_iso
 
 CHUNK: Final = 4096
 """Rows that are held at a time."""
+
+LONGEST_LINE: Final = 20_000
+"""Characters."""
+
+MOST_LINES: Final = 100
+"""Of one row, whose cells may hold line ends."""
 
 Ask = Callable[[Epoch, Weather | None], Any]
 """What is asked of epochs and the weather at them."""
@@ -81,7 +90,7 @@ class EpochFile:
     def rows(self) -> Iterator[Row]:
         """Every row below the names of the columns."""
         try:
-            with self.path.open(encoding="utf-8-sig", newline="") as file:
+            with io.TextIOWrapper(opened(self.path), encoding="utf-8-sig", newline="") as file:
                 yield from self._rows(file)
         except OSError as error:
             raise FileError(self.path, None, f"cannot be read: {error.strerror}") from None
@@ -89,12 +98,13 @@ class EpochFile:
             raise FileError(self.path, None, "not a text file (UTF-8)") from None
 
     def _rows(self, file: TextIO) -> Iterator[Row]:
-        lines = _Lines(file)
+        lines = _Lines(self.path, file)
         cells = csv.reader(lines, strict=True, skipinitialspace=True)
         try:
             head = [name.strip() for name in next(cells, [])]
             epoch, weather = self._columns(head)
             for row in cells:
+                lines.of_row = 0
                 if len(row) != len(head):
                     reason = f"{len(row)} cells, but {len(head)} columns have names"
                     raise FileError(self.path, lines.number, reason)
@@ -162,9 +172,10 @@ class EpochFile:
 class _Lines:
     """The lines of a file that are neither blank nor comments; `number` is that of the last."""
 
-    def __init__(self, file: TextIO) -> None:
-        self.number = 0
-        self._lines = enumerate(file, start=1)
+    def __init__(self, path: Path, file: TextIO) -> None:
+        self.number = self.of_row = 0
+        self._path = path
+        self._lines = enumerate(iter(partial(file.readline, LONGEST_LINE + 1), ""), start=1)
 
     def __iter__(self) -> _Lines:
         return self
@@ -172,13 +183,19 @@ class _Lines:
     def __next__(self) -> str:
         for number, line in self._lines:
             self.number = number
+            if len(line) > LONGEST_LINE:
+                reason = f"a line of more than {LONGEST_LINE} characters"
+                raise FileError(self._path, number, reason)
             if line.strip() and not line.lstrip().startswith("#"):
+                self.of_row += 1
+                if self.of_row > MOST_LINES:
+                    raise FileError(self._path, number, f"a row of more than {MOST_LINES} lines")
                 return line
         raise StopIteration
 
 
 def _number(name: str, value: float | str) -> float:
-    try:
-        return float(value)
-    except ValueError:
-        raise InputError(name, value, "a number") from None
+    with suppress(ValueError):
+        if isinstance(value, float) or (value.isascii() and "_" not in value):
+            return float(value)
+    raise InputError(name, value, "a number")

@@ -19,6 +19,7 @@ from lighttime.earth.site_file import read_station
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.errors import FileError, InputError, LighttimeError
+from lighttime.textfile import opened
 from lighttime.timescales import SCALES, Epoch
 from lighttime.version import __version__
 
@@ -117,11 +118,8 @@ def _station(arguments: argparse.Namespace, epoch: Epoch | None) -> Station:
 
 
 def _is_sinex(path: Path) -> bool:
-    try:
-        with path.open("rb") as file:
-            return file.read(8).startswith(_SINEX)
-    except OSError as error:
-        raise FileError(path, None, error.strerror or str(error)) from error
+    with opened(path) as file:
+        return file.read(8).startswith(_SINEX)
 
 
 def _found(

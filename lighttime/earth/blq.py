@@ -12,6 +12,7 @@ Source: the format of the ocean loading services, as described in IERS Conventio
 from __future__ import annotations
 
 import re
+from array import array
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -22,6 +23,7 @@ import numpy as np
 from lighttime.earth.admittance import CONSTITUENTS
 from lighttime.earth.loading import OceanLoading
 from lighttime.errors import FileError, InputError, UnknownNameError
+from lighttime.textfile import numbered_lines
 
 __all__ = ["list_blq", "read_blq"]
 
@@ -29,7 +31,7 @@ LARGEST_FILE: Final = 64 * 2**20
 """Bytes: some 70,000 stations. A larger file is not one of loading coefficients."""
 
 LONGEST_LINE: Final = 512
-"""Characters."""
+"""Bytes."""
 
 ROWS: Final = (
     "amplitudes up",
@@ -41,17 +43,36 @@ ROWS: Final = (
 )
 
 _NUMBER = re.compile(r"[+-]?\d*\.\d+")
+_CENTRE_OF_MASS = re.compile(r"CMC:\s*(YES|NO)\b", re.IGNORECASE)
 _CELL_WIDTH, _CELLS_START = 7, 1  # the columns of the format, where blanks do not part cells
 
 
-@dataclass
+@dataclass(slots=True)
+class _Remarks:
+    """What is taken from the remarks before the numbers of a station, or of the whole file."""
+
+    first: str = ""
+    centre_of_mass: bool | None = None
+
+    def take(self, remark: str) -> None:
+        self.first = self.first or remark
+        if self.centre_of_mass is None and (said := _CENTRE_OF_MASS.match(remark)):
+            self.centre_of_mass = said[1].upper() == "YES"
+
+
+@dataclass(slots=True)
 class _Block:
-    """One station of a file while it is read; remarks are those before its numbers."""
+    """One station of a file while it is read."""
 
     name: str
     line: int
-    rows: list[list[float]] = field(default_factory=list)
-    remarks: list[str] = field(default_factory=list)
+    remarks: _Remarks
+    numbers: array[float] = field(default_factory=lambda: array("d"))
+
+    @property
+    def rows(self) -> int:
+        """How many of its rows were read."""
+        return len(self.numbers) // len(CONSTITUENTS)
 
 
 def read_blq(path: str | Path, site: str) -> OceanLoading:
@@ -116,20 +137,20 @@ def _canonical(name: str) -> str:
     return " ".join(name.split()).casefold()
 
 
-def _read(path: Path) -> tuple[list[_Block], list[str]]:
+def _read(path: Path) -> tuple[list[_Block], _Remarks]:
     """All stations of a file, complete, and the remarks before the first."""
     blocks: list[_Block] = []
-    header: list[str] = []
+    header = _Remarks()
     for number, text in _lines(path):
         block = blocks[-1] if blocks else None
-        complete = block is None or len(block.rows) == len(ROWS)
+        complete = block is None or block.rows == len(ROWS)
         if text.startswith("$$"):
             remark = text[2:].strip()
             _check_order(path, number, remark)
             if block is None:
-                header.append(remark)
+                header.take(remark)
             elif not block.rows:
-                block.remarks.append(remark)
+                block.remarks.take(remark)
         elif not text.strip():
             continue
         elif complete or block is None:
@@ -137,13 +158,13 @@ def _read(path: Path) -> tuple[list[_Block], list[str]]:
                 raise FileError(path, number, "a row of numbers where a station's name belongs")
             if not text.strip().isprintable():
                 raise FileError(path, number, "a station's name with unprintable characters")
-            blocks.append(_Block(" ".join(text.split()), number))
+            blocks.append(_Block(" ".join(text.split()), number, _Remarks()))
         else:
-            block.rows.append(_row(path, number, text, block))
+            block.numbers.extend(_row(path, number, text, block))
     if not blocks:
         raise FileError(path, None, "no station in it")
-    if len(blocks[-1].rows) < len(ROWS):
-        missing = ROWS[len(blocks[-1].rows)]
+    if blocks[-1].rows < len(ROWS):
+        missing = ROWS[blocks[-1].rows]
         raise FileError(path, None, f"ends where the {missing} of {blocks[-1].name} belong")
     for block in blocks:
         _coefficients(path, block, header)
@@ -152,18 +173,8 @@ def _read(path: Path) -> tuple[list[_Block], list[str]]:
 
 def _lines(path: Path) -> Iterator[tuple[int, str]]:
     """Numbered lines of a text file of bounded size."""
-    try:
-        with path.open("rb") as stream:
-            size, number = 0, 0
-            while raw := stream.readline(LONGEST_LINE + 1):
-                number, size = number + 1, size + len(raw)
-                if len(raw) > LONGEST_LINE:
-                    raise FileError(path, number, f"a line of more than {LONGEST_LINE} characters")
-                if size > LARGEST_FILE:
-                    raise FileError(path, number, f"a file of more than {LARGEST_FILE} bytes")
-                yield number, raw.decode("latin-1").rstrip("\r\n")
-    except OSError as error:
-        raise FileError(path, None, error.strerror or str(error)) from error
+    for number, raw in numbered_lines(path, LARGEST_FILE, LONGEST_LINE):
+        yield number, raw.decode("latin-1").rstrip("\r\n")
 
 
 def _cells(text: str) -> list[str]:
@@ -183,7 +194,7 @@ def _row(path: Path, number: int, text: str, block: _Block) -> list[float]:
     cells = _cells(text)
     if cells:
         return [float(cell) for cell in cells]
-    what = f"the {ROWS[len(block.rows)]} of {block.name}"
+    what = f"the {ROWS[block.rows]} of {block.name}"
     words = text.split()
     wrong = [word for word in words if not _NUMBER.fullmatch(word)]
     if wrong:
@@ -198,19 +209,13 @@ def _check_order(path: Path, number: int, remark: str) -> None:
         raise FileError(path, number, f"columns {order.strip()}, not {' '.join(CONSTITUENTS)}")
 
 
-def _coefficients(path: Path, block: _Block, header: list[str]) -> OceanLoading:
-    numbers = np.array(block.rows)
-    model = f"{block.remarks[0]} " if block.remarks else ""
-    source = f"{model}({path.name}, {block.name})"
+def _coefficients(path: Path, block: _Block, header: _Remarks) -> OceanLoading:
+    numbers = np.array(block.numbers).reshape(len(ROWS), len(CONSTITUENTS))
+    source = f"{block.remarks.first} ({path.name}, {block.name})".lstrip()
+    centre_of_mass = block.remarks.centre_of_mass  # before what is said for the whole file
+    if centre_of_mass is None:
+        centre_of_mass = header.centre_of_mass
     try:
-        return OceanLoading(numbers[:3], numbers[3:], source, _centre_of_mass(block, header))
+        return OceanLoading(numbers[:3], numbers[3:], source, centre_of_mass)
     except InputError as error:
         raise FileError(path, block.line, f"{block.name}: {error}") from error
-
-
-def _centre_of_mass(block: _Block, header: list[str]) -> bool | None:
-    """What the remarks say after "CMC:"; those of the station before those of the file."""
-    for remark in block.remarks + header:
-        if said := re.match(r"CMC:\s*(YES|NO)\b", remark.upper()):
-            return said[1] == "YES"
-    return None

@@ -11,7 +11,6 @@ import re
 from bisect import bisect_right
 from dataclasses import dataclass
 from os import PathLike
-from pathlib import Path
 from typing import Any, Final
 
 import numpy as np
@@ -19,6 +18,7 @@ from numpy.typing import NDArray
 
 from lighttime.constants import MJD_ZERO
 from lighttime.errors import FileError
+from lighttime.textfile import content
 from lighttime.timescales.scales import tai_minus_utc
 
 Floats = NDArray[np.float64]
@@ -27,6 +27,12 @@ FINAL: Final = 0
 RAPID: Final = 1
 PREDICTED: Final = 2
 """How a day's values came about: in the C04, in rapid service, or as a prediction."""
+
+
+LARGEST_FILE: Final = 32 * 2**20
+"""Bytes: some four centuries of days."""
+
+MOST_LINES: Final = 200_000
 
 
 @dataclass(frozen=True)
@@ -141,10 +147,10 @@ def read_days(path: str | PathLike[str], after_mjd: float | None = None) -> Days
     FileError
         With the line: a field that is no number, a missing value, a day out of order.
     """
-    try:
-        lines = Path(path).read_bytes().splitlines()
-    except OSError as error:
-        raise FileError(path, None, error.strerror or str(error)) from error
+    text = content(path, LARGEST_FILE)
+    if text.count(b"\n") + text.count(b"\r") > 2 * MOST_LINES:
+        raise FileError(path, None, f"more than {MOST_LINES} lines")
+    lines = text.splitlines()
     head = 0
     while head < len(lines) and (not lines[head].strip() or lines[head].startswith(b"#")):
         head += 1

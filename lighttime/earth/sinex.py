@@ -210,8 +210,9 @@ def _site(blocks: Blocks, place: Place, solutions: list[SinexSolution]) -> Sinex
 def _check_on_earth(blocks: Blocks, solutions: Mapping[Key, SinexSolution]) -> None:
     """Position and velocity are those of a station."""
     still = (0.0, 0.0, 0.0)
-    radius = np.linalg.norm([s.xyz_m for s in solutions.values()], axis=1)
-    speed = np.linalg.norm([s.velocity_m_per_yr or still for s in solutions.values()], axis=1)
+    with np.errstate(over="ignore"):  # infinity is no place on the Earth either
+        radius = np.linalg.norm([s.xyz_m for s in solutions.values()], axis=1)
+        speed = np.linalg.norm([s.velocity_m_per_yr or still for s in solutions.values()], axis=1)
     plain = (radius > 6_340_000.0) & (radius < 6_400_000.0) & (speed < 0.5)
     for (key, solution), fine in zip(solutions.items(), plain.tolist(), strict=True):
         if fine:

@@ -5,6 +5,7 @@ Source: SINEX format, version 2.02 (from memory).
 
 from __future__ import annotations
 
+import re
 from pathlib import Path
 from typing import Final, NamedTuple
 
@@ -24,6 +25,11 @@ VELOCITY: Final = ("VELX", "VELY", "VELZ")
 
 _UNITS: Final = {"STA": ("m",), "VEL": ("m/y", "m/yr")}
 _POST_SEISMIC = ("AEXP", "TEXP", "ALOG", "TLOG")
+
+MOST_LINES: Final = 300_000
+"""Lines of data in the blocks that are read; what they say is kept, some 1 kB each."""
+
+_HIGHEST_M = 100_000.0
 
 _TIMES = (0, 5, 8, 13, 15, 28)
 _LAYOUTS: Final = {
@@ -78,9 +84,13 @@ class Blocks:
     def of_file(cls, path: Path, titles: tuple[str, ...] = tuple(_LAYOUTS)) -> Blocks:
         """Read the blocks with these titles."""
         blocks = cls(path)
+        count = 0
         for title, line, text in records(path, titles):
             blocks.titles.add(title)
             if text.strip():
+                count += 1
+                if count > MOST_LINES:
+                    raise FileError(path, line, f"more than {MOST_LINES} lines of data")
                 blocks._take(title, line, text)
         return blocks
 
@@ -102,9 +112,10 @@ class Blocks:
 
     def _take_header(self, text: str) -> None:
         words = text.split()
-        if len(words) < 9 or not (words[8].isdigit() or set(words[8]) == {"*"}):
+        stated = words[8] if len(words) > 8 else ""
+        if not re.fullmatch(r"[0-9]{1,9}|\*+", stated):
             raise FileError(self.path, 1, "the header does not say the number of estimates")
-        self.stated = int(words[8]) if words[8].isdigit() else None
+        self.stated = None if stated.startswith("*") else int(stated)
 
     def check_count(self) -> None:
         """The number of estimates is that of the header (which may be out of its columns)."""
@@ -149,12 +160,13 @@ class Blocks:
             height = float(numbers[6])
         except (ValueError, IndexError):
             longitude = latitude = height = np.nan
-        if not (abs(longitude) <= 360.0 and abs(latitude) <= 90.0 and np.isfinite(height)):
+        if not (abs(longitude) <= 360.0 and abs(latitude) <= 90.0 and abs(height) <= _HIGHEST_M):
             reason = f"no longitude, latitude and height at the end of {columns.text.strip()!r}"
             raise columns.error(reason)
         known = longitude != 0.0 or latitude != 0.0  # some write zeros for what they do not know
         place = (latitude, longitude, height) if known else None
-        self.identities[key] = Identity(columns.word(9, 18), columns.word(21, 43), place)
+        name = "".join(letter if letter.isprintable() else "?" for letter in columns.word(21, 43))
+        self.identities[key] = Identity(columns.word(9, 18), name, place)
 
     def _take_eccentricity(self, columns: Columns) -> None:
         kind = columns.word(42, 45)

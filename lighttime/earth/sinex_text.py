@@ -22,9 +22,15 @@ from pathlib import Path
 from typing import Final
 
 from lighttime.errors import FileError
+from lighttime.textfile import opened
 
 LONGEST_LINE: Final = 1024
 """Bytes; the format allows 80."""
+
+MOST_LINES: Final = 50_000_000
+"""Of a file, as unpacked: some 4 GB, one minute."""
+
+MOST_BLOCKS: Final = 1000
 
 HEADER: Final = "%=SNX"
 FOOTER: Final = "%ENDSNX"
@@ -80,6 +86,8 @@ def records(path: Path, wanted: Collection[str]) -> Iterator[tuple[str, int, str
                 raise FileError(path, number, f"a second block {name}")
             title, opened, keep = name, number, name in wanted
             seen.add(name)
+            if len(seen) > MOST_BLOCKS:
+                raise FileError(path, number, f"more than {MOST_BLOCKS} blocks")
             if keep:
                 yield title, number, ""
         elif first == b"-":
@@ -118,7 +126,7 @@ def _lines(path: Path) -> Iterator[tuple[int, bytes]]:
     number = 0
     try:
         with ExitStack() as stack:
-            plain = stack.enter_context(path.open("rb"))
+            plain = stack.enter_context(opened(path))
             stream: BufferedReader = plain
             magic = plain.peek(2)[:2]
             if magic == _COMPRESS:
@@ -130,6 +138,8 @@ def _lines(path: Path) -> Iterator[tuple[int, bytes]]:
             for number, raw in enumerate(iter(read, b""), start=1):
                 if len(raw) > LONGEST_LINE:
                     raise FileError(path, number, f"a line of more than {LONGEST_LINE} bytes")
+                if number > MOST_LINES:
+                    raise FileError(path, number, f"more than {MOST_LINES} lines")
                 yield number, raw
     except (OSError, EOFError, zlib.error) as error:
         reason = getattr(error, "strerror", None) or str(error)

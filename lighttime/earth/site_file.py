@@ -69,12 +69,16 @@ from lighttime.earth.blq import read_blq
 from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
 from lighttime.earth.residual_motion import ResidualMotion
 from lighttime.earth.station import Station
-from lighttime.errors import FileError, InputError, UnknownNameError
+from lighttime.errors import FileError, InputError, UnknownNameError, shown
+from lighttime.textfile import numbered_lines
 
 __all__ = ["read_station"]
 
-LONGEST_BYTES: Final = 1_000_000
-"""A station file is a page of text; what is longer is something else."""
+LARGEST_FILE: Final = 100_000
+"""Bytes. A station file is a page of text; what is longer is something else."""
+
+LONGEST_LINE: Final = 1000
+"""Bytes. The time to read a key grows with the square of the number of its parts."""
 
 _MOST_MM = 50.0  # no tide of the atmosphere moves the ground by more
 
@@ -205,15 +209,9 @@ class _Table:
 
     @classmethod
     def of_file(cls, path: Path) -> _Table:
+        lines = [line for _, line in numbered_lines(path, LARGEST_FILE, LONGEST_LINE)]
         try:
-            with path.open("rb") as file:
-                content = file.read(LONGEST_BYTES + 1)
-        except OSError as error:
-            raise FileError(path, None, error.strerror or str(error)) from error
-        if len(content) > LONGEST_BYTES:
-            raise FileError(path, None, f"longer than {LONGEST_BYTES} bytes: no station file")
-        try:
-            text = content.decode("utf-8")
+            text = b"".join(lines).decode("utf-8")
             values = tomllib.loads(text)
         except UnicodeDecodeError as error:
             raise FileError(path, None, "not a text file (UTF-8)") from error
@@ -226,7 +224,7 @@ class _Table:
     def table(self, key: str) -> _Table:
         value = self.values[key]
         if not isinstance(value, dict):
-            raise self.error(key, f"{key} is {value!r}; allowed: a table, [{key}]")
+            raise self.error(key, f"{key} is {shown(value)}; allowed: a table, [{key}]")
         return _Table(self.path, self.lines, value, key)
 
     def accept(self, known: tuple[str, ...]) -> None:
@@ -240,7 +238,7 @@ class _Table:
     def numbers(self, key: str, count: int, most: float | None = None) -> Any:
         value = self._value(key)
         if not isinstance(value, list) or len(value) != count:
-            raise self.error(key, f"{key} is {value!r}; allowed: a list of {count} numbers")
+            raise self.error(key, f"{key} is {shown(value)}; allowed: a list of {count} numbers")
         found = tuple(self._float(key, each) for each in value)
         if most is not None and not all(abs(each) <= most for each in found):
             raise self.error(key, f"{key} is {value!r}; allowed: {-most:g} to {most:g}")
@@ -249,13 +247,15 @@ class _Table:
     def text(self, key: str) -> str:
         value = self._value(key)
         if not isinstance(value, str) or not value.strip():
-            raise self.error(key, f'{key} is {value!r}; allowed: text in quotes, "..."')
+            raise self.error(key, f'{key} is {shown(value)}; allowed: text in quotes, "..."')
+        if not " ".join(value.split()).isprintable():
+            raise self.error(key, f"{key} is {shown(value)}; allowed: text that can be printed")
         return value
 
     def truth(self, key: str) -> bool:
         value = self._value(key)
         if not isinstance(value, bool):
-            raise self.error(key, f"{key} is {value!r}; allowed: true or false")
+            raise self.error(key, f"{key} is {shown(value)}; allowed: true or false")
         return value
 
     @property
@@ -281,7 +281,7 @@ class _Table:
 
     def _float(self, key: str, value: Any) -> float:
         if isinstance(value, bool) or not isinstance(value, (int, float)):
-            raise self.error(key, f"{key} holds {value!r}; allowed: numbers")
+            raise self.error(key, f"{key} holds {shown(value)}; allowed: numbers")
         try:
             return float(value)
         except OverflowError:
@@ -291,9 +291,9 @@ class _Table:
         """Where a key of this table stands, else where the table begins, else None."""
         table, begin = "", None
         for number, line in enumerate(self.lines, start=1):
-            header = re.match(r"\s*\[+\s*([^\]]*?)\s*\]", line)
+            header = re.match(r"\s*+\[++([^\]]*+)\]", line)
             if header:
-                table = header[1]
+                table = header[1].strip()
                 begin = number if table == self.name else begin
                 if table == key and not self.name:
                     return number

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from functools import cached_property
+from math import hypot
 from os import PathLike
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Literal
@@ -94,7 +95,7 @@ class Station:
         if not 1900.0 <= float(self.epoch) <= 2100.0:
             raise InputError("epoch", self.epoch, "1900 to 2100, in years")
         object.__setattr__(self, "epoch", float(self.epoch))
-        radius = float(np.linalg.norm(self.xyz_m))
+        radius = hypot(*self.xyz_m)
         # outside this shell there is no need to ask for the height, nor sense in doing so
         near = 6_250_000.0 < radius < 6_480_000.0
         if not near or abs(self.height_m) > HIGHEST_M:

@@ -10,6 +10,7 @@ from typing import Any, Final
 
 from lighttime.answer import RoundTrip
 from lighttime.commands import options, writing
+from lighttime.commands.budget_figure import BudgetFigure, check_figure
 from lighttime.commands.epoch_file import CHUNK, Ask, EpochFile
 from lighttime.errors import HorizonError, InputError, LighttimeError
 from lighttime.model import TAGS
@@ -74,6 +75,16 @@ def _add_air(group: Any) -> None:
 
 
 def _add_output(group: Any) -> None:
+    group.add_argument(
+        "--budget", action="store_true",
+        help="with one sigma of the range, and what contributes to it",
+    )  # fmt: skip
+    group.add_argument(
+        "--plot",
+        metavar="FIGURE",
+        type=Path,
+        help="draw the error budget over the epochs: .png, .svg or .pdf",
+    )
     group.add_argument("--json", action="store_true", help="print JSON, for programs")
     group.add_argument(
         "--output",
@@ -81,7 +92,9 @@ def _add_output(group: Any) -> None:
         type=Path,
         help="write a table instead of printing: .csv, .ecsv (with units) or .json",
     )
-    group.add_argument("--overwrite", action="store_true", help="let --output replace a file")
+    group.add_argument(
+        "--overwrite", action="store_true", help="let --output and --plot replace files"
+    )
     group.add_argument("--quiet", action="store_true", help="no progress bar")
 
 
@@ -90,6 +103,8 @@ def run(arguments: argparse.Namespace) -> int:
     if arguments.output is not None:
         inputs = [arguments.epochs] if arguments.epochs is not None else []
         writing.check_output(arguments.output, arguments.overwrite, inputs)
+    if arguments.plot is not None:
+        check_figure(arguments.plot, arguments.overwrite)
     model, station = options.model(arguments), options.station(arguments)
     reflector, weather = options.array(arguments), _weather(arguments)
 
@@ -161,21 +176,34 @@ def _from_file(
 def _tell(
     arguments: argparse.Namespace, count: int, outline: RoundTrip, answers: Iterator[RoundTrip]
 ) -> None:
-    """Write or print the ranges."""
+    """Write or print the ranges, and draw their budget."""
+    drawing = BudgetFigure()
+    if arguments.plot is not None:
+        answers = drawing.seen(answers)
+    _write(arguments, count, outline, answers)
+    if arguments.plot is not None:
+        drawing.write(arguments.plot, arguments.overwrite)
+
+
+def _write(
+    arguments: argparse.Namespace, count: int, outline: RoundTrip, answers: Iterator[RoundTrip]
+) -> None:
     if arguments.output is not None:
         write = writing.FORMATS[arguments.output.suffix.lower()]
         with writing.new_file(arguments.output, arguments.overwrite) as file:
-            write(file, outline, answers)
+            write(file, outline, answers, arguments.budget)
         said = {"file": str(arguments.output), "count": count} | writing.circumstances(outline)
         if arguments.json:
             writing.print_json(said, sys.stdout)
         else:
             print(_written(said))
     elif arguments.json:
-        writing.write_json(sys.stdout, outline, answers)
+        writing.write_json(sys.stdout, outline, answers, arguments.budget)
     else:
         for answer in answers:  # of a file that is longer than one chunk, nothing is printed
             print(answer)
+            if arguments.budget:
+                print(f"\n{answer.budget}")
         if count > MOST_ROWS:
             print(f"  {MOST_ROWS} of {count} epochs are shown: --output FILE and --json have all")
 

@@ -35,7 +35,9 @@ RANGE_KEYS: Final = """\
                          of the ray at the station, without refraction
     pressure_hpa, temperature_k, relative_humidity
                          if they were given
-    terms_s              each term by its name, two-way; their sum is light_time_s"""
+    terms_s              each term by its name, two-way; their sum is light_time_s
+    sigma_s, budget_s    with --budget: one sigma of light_time_s, and what each part of the
+                         error budget contributes; their squares add"""
 
 
 # -- the content ---------------------------------------------------------------------------------
@@ -63,9 +65,19 @@ def terms(answer: RoundTrip) -> dict[str, list[float]]:
     return {name: np.ravel(values).tolist() for name, values in answer.terms.items()}
 
 
-def flat_columns(answer: RoundTrip) -> dict[str, list[Any]]:
-    """All columns, terms with ``term_`` before and the unit after their name."""
-    return columns(answer) | {f"term_{name}_s": v for name, v in terms(answer).items()}
+def budget(answer: RoundTrip) -> dict[str, list[float]]:
+    """The parts of the error budget as lists, one sigma in seconds."""
+    parts = answer.budget.parts.items()
+    return {name: np.ravel(part.sigma_s).tolist() for name, part in parts}
+
+
+def flat_columns(answer: RoundTrip, with_budget: bool = False) -> dict[str, list[Any]]:
+    """All columns; terms and parts of the budget with a word before and the unit after."""
+    flat = columns(answer) | {f"term_{name}_s": v for name, v in terms(answer).items()}
+    if with_budget:
+        flat["sigma_s"] = np.ravel(answer.sigma_s).tolist()
+        flat |= {f"budget_{name}_s": v for name, v in budget(answer).items()}
+    return flat
 
 
 def circumstances(answer: RoundTrip) -> dict[str, Any]:
@@ -116,33 +128,46 @@ def print_json(value: Any, file: TextIO) -> None:
 # -- formats -------------------------------------------------------------------------------------
 
 
-def write_json(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -> None:
+def write_json(
+    file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip], with_budget: bool = False
+) -> None:
     """One JSON object with the keys of `RANGE_KEYS`, a line for each range."""
     head = json.dumps(circumstances(outline), indent=2, allow_nan=False)
     file.write(head.removesuffix("\n}") + ',\n  "ranges": [')
     before = "\n    "
     for answer in answers:
-        told, parts = columns(answer), terms(answer)
-        for row, term_row in zip(_rows(told), _rows(parts), strict=True):
-            file.write(before + json.dumps(row | {"terms_s": term_row}, allow_nan=False))
+        rows = [
+            row | {"terms_s": parts}
+            for row, parts in zip(_rows(columns(answer)), _rows(terms(answer)), strict=True)
+        ]
+        if with_budget:
+            sigmas = np.ravel(answer.sigma_s).tolist()
+            for row, sigma, parts in zip(rows, sigmas, _rows(budget(answer)), strict=True):
+                row |= {"sigma_s": sigma, "budget_s": parts}
+        for row in rows:
+            file.write(before + json.dumps(row, allow_nan=False))
             before = ",\n    "
     file.write("\n  ]\n}\n")
 
 
-def write_csv(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -> None:
+def write_csv(
+    file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip], with_budget: bool = False
+) -> None:
     """The names of the columns and a line for each range."""
     write = csv.writer(file, lineterminator="\n")
-    write.writerow(flat_columns(outline))
+    write.writerow(flat_columns(outline, with_budget))
     for answer in answers:
-        write.writerows(zip(*flat_columns(answer).values(), strict=True))
+        write.writerows(zip(*flat_columns(answer, with_budget).values(), strict=True))
 
 
-def write_ecsv(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -> None:
+def write_ecsv(
+    file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip], with_budget: bool = False
+) -> None:
     """ECSV 1.0: CSV with units and circumstances in a header, as astropy and others read it.
 
     Columns are named as in `RoundTrip.table`, without the units.
     """
-    names = {name: _unit(name) for name in flat_columns(outline)}
+    names = {name: _unit(name) for name in flat_columns(outline, with_budget)}
     meta = json.dumps(circumstances(outline), allow_nan=False)  # JSON is YAML
     file.write("# %ECSV 1.0\n# ---\n# delimiter: ','\n# datatype:\n")
     for name, unit in names.items():
@@ -153,7 +178,7 @@ def write_ecsv(file: TextIO, outline: RoundTrip, answers: Iterable[RoundTrip]) -
     write = csv.writer(file, lineterminator="\n")
     write.writerow([_bare(name, unit) for name, unit in names.items()])
     for answer in answers:
-        write.writerows(zip(*flat_columns(answer).values(), strict=True))
+        write.writerows(zip(*flat_columns(answer, with_budget).values(), strict=True))
 
 
 FORMATS: Final = {".csv": write_csv, ".ecsv": write_ecsv, ".json": write_json}

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from lighttime.errors import InputError, LighttimeError
+from lighttime.uncertainty.result import MM_PER_S
+from lighttime.vectors import Array
 
 if TYPE_CHECKING:
     from lighttime.uncertainty.result import Budget
@@ -15,11 +18,11 @@ if TYPE_CHECKING:
 MOST_PARTS = 9
 """So many parts have a colour of their own; the others are one."""
 
-MM_PER_S = 0.5 * 299792458.0 * 1.0e3
+UNIX_MJD = 40587.0
 
 
 def plot(budget: Budget, path: str | Path | None = None) -> Any:
-    """Draw a budget over its epochs: the height is the total sigma, shared out by squares.
+    """Draw a budget over its epochs.
 
     Parameters
     ----------
@@ -31,6 +34,25 @@ def plot(budget: Budget, path: str | Path | None = None) -> Any:
     Returns
     -------
     matplotlib Figure
+        See `drawn`.
+    """
+    utc = budget.query.when.to("utc")
+    days = np.ravel((utc.jd1 - 2400000.5) + utc.jd2)
+    figure = drawn(days, {name: np.ravel(part.sigma_s) for name, part in budget.parts.items()})
+    if path is not None:
+        figure.savefig(path, dpi=150)
+    return figure
+
+
+def drawn(mjd_utc: Array, parts: Mapping[str, Array]) -> Any:
+    """The picture: its height is the total sigma, shared out by squares.
+
+    Parameters
+    ----------
+    mjd_utc : ndarray, shape (n,)
+        Two epochs or more, in any order.
+    parts : mapping of str to ndarray, shape (n,)
+        One sigma of the round trip by each, s.
 
     Raises
     ------
@@ -45,33 +67,34 @@ def plot(budget: Budget, path: str | Path | None = None) -> Any:
     square has of the sum of squares.
     """
     try:
+        from matplotlib.dates import AutoDateLocator, ConciseDateFormatter
         from matplotlib.figure import Figure
     except ImportError:
-        raise LighttimeError("a picture needs matplotlib: install lighttime[plot]") from None
-    if budget.query.size < 2:
-        raise InputError("epochs of the budget", budget.query.size, "2 or more, to draw over time")
-    when = budget.query.when
-    days = np.ravel((when.jd1 - 2400000.5) + when.jd2)
-    order = np.argsort(days)
-    total = np.ravel(budget.total_s)[order]
-    parts = [(p.name, np.ravel(p.sigma_s)[order]) for p in budget.largest_first]
-    shown, rest = parts[:MOST_PARTS], parts[MOST_PARTS:]
-    if rest:
-        shown.append(("all others", np.sqrt(sum(sigma**2 for _, sigma in rest))))
+        reason = "a figure needs matplotlib: pip install 'lighttime[plot]'"
+        raise LighttimeError(reason) from None
+    if mjd_utc.size < 2:
+        raise InputError("epochs of the budget", mjd_utc.size, "2 or more, to draw over time")
+    order = np.argsort(mjd_utc, kind="stable")
+    days = mjd_utc[order] - UNIX_MJD  # of UTC, leap seconds or not, as matplotlib counts them
+    squares = {name: np.square(sigma[order]) for name, sigma in parts.items()}
+    ranked = sorted(squares, key=lambda name: -float(np.mean(squares[name])))
+    shown = {name: squares[name] for name in ranked[:MOST_PARTS]}
+    if len(ranked) > MOST_PARTS:
+        shown["all others"] = np.sum([squares[name] for name in ranked[MOST_PARTS:]], axis=0)
+    total = np.sqrt(np.sum(list(squares.values()), axis=0))
     figure = Figure(figsize=(9.0, 5.0), layout="constrained")
     axes = figure.subplots()
-    axes.stackplot(
-        days[order],
-        [MM_PER_S * sigma**2 / total for _, sigma in shown],
-        labels=[name for name, _ in shown],
-    )
-    axes.plot(days[order], MM_PER_S * total, color="black", linewidth=1.0, label="total")
-    axes.set_xlabel(f"modified Julian date, {when.scale.upper()}")
-    axes.set_ylabel("one sigma of the range, one way, mm (parts by their squares)")
-    axes.set_xlim(days.min(), days.max())
+    bands = [MM_PER_S * square / total for square in shown.values()]
+    axes.stackplot(days, bands, labels=list(shown))
+    axes.plot(days, MM_PER_S * total, color="black", linewidth=0.8, label="total")
+    dates = AutoDateLocator()  # type: ignore[no-untyped-call]
+    axes.xaxis.set_major_locator(dates)
+    axes.xaxis.set_major_formatter(ConciseDateFormatter(dates))  # type: ignore[no-untyped-call]
+    axes.set_xlabel("UTC")
+    axes.set_ylabel("one sigma of the range, one way, mm")
+    axes.set_xlim(days[0], days[-1])
     axes.set_ylim(bottom=0.0)
+    axes.set_title("Error budget; parts by their squares", loc="left", fontsize="medium")
     handles, labels = axes.get_legend_handles_labels()
     figure.legend(handles[::-1], labels[::-1], loc="outside right upper", frameon=False)
-    if path is not None:
-        figure.savefig(path, dpi=150)
     return figure

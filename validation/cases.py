@@ -5,7 +5,7 @@ the tag, weather. Five kinds of instants:
 
 ``any``       1969-07-21 to 2050-12-31, UTC
 ``seam``      an event within 1 microsecond of the end of a record of DE421 (or exactly on it):
-              the tagged one, or one that light reaches from there
+              the tagged one, or (not exactly) one that light reaches from there
 ``leap``      days of UTC that end in a leap second, and some inside of it, 23:59:60
 ``drift``     1969 to 1971, when UTC ran slower than TAI
 ``midnight``  within 3 seconds of 0h UTC, where a day's tables and the daily values of Earth
@@ -34,7 +34,7 @@ FIRST_MJD, END_MJD = 40423, 70172
 RECORDS_START_JD = 2414992.5
 RECORD_DAYS = (4, 8, 16, 32)
 """Of DE421: its first record begins there, and the records of every body are this long."""
-NEAR_SEAM_S = 1e-6
+NEAR_SEAM_S, BESIDE_S = 1e-6, 1e-11
 LOWEST_DEG = 10.0
 SHARES = {"any": 0.55, "seam": 0.20, "leap": 0.14, "drift": 0.05, "midnight": 0.06}
 TAGS = ("transmit", "bounce", "receive")
@@ -227,8 +227,15 @@ def _visible(cases: list[Case]) -> list[Case]:
 
 
 def _other_events(cases: list[Case]) -> list[Case]:
-    """Of two in five, the event that is on the seam becomes another one than the tagged."""
-    on_seam = [(case.tag, case.tag, *TAGS)[k % 5] for k, case in enumerate(cases)]
+    """Of two in five, the event that is on the seam becomes another one than the tagged.
+
+    Not where it is nearer to the seam than `BESIDE_S`: positions jump there, by up to 0.2 ps of
+    light time, and light may reach the end neither before the jump nor after it.
+    """
+    clear = [abs(case.when.jd2) * DAY > BESIDE_S for case in cases]
+    on_seam = [
+        (case.tag, case.tag, *TAGS)[k % 5] if clear[k] else case.tag for k, case in enumerate(cases)
+    ]
     held = [replace(case, tag=tag) for case, tag in zip(cases, on_seam, strict=True)]
     out = list(cases)
     for indices, answer in _answers(held, lambda c: (c.station.name, c.array.name, c.tag)):

@@ -229,8 +229,8 @@ def _visible(cases: list[Case]) -> list[Case]:
 def _other_events(cases: list[Case]) -> list[Case]:
     """Of two in five, the event that is on the seam becomes another one than the tagged.
 
-    Not where it is nearer to the seam than `BESIDE_S`: positions jump there, by up to 0.2 ps of
-    light time, and light may reach the end neither before the jump nor after it.
+    Not where it is nearer to the seam than `BESIDE_S`: positions jump there, by up to 0.14 mm
+    or 0.5 ps, and light may reach the end neither before the jump nor after it.
     """
     clear = [abs(case.when.jd2) * DAY > BESIDE_S for case in cases]
     on_seam = [

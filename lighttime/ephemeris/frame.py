@@ -97,7 +97,8 @@ class EarthFrame:
     def crosses_seam(self, before: Array, after: Array) -> bool:
         """Whether the end of a record of Earth, Moon or libration lies between two instants.
 
-        Records meet to tens of micrometres, and no velocity leads over that step.
+        Records of the Earth in DE421 meet to 0.05 mm rms, 0.14 mm at most, and no velocity leads
+        over that step.
 
         Parameters
         ----------

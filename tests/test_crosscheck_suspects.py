@@ -12,7 +12,7 @@ import pytest
 import lighttime as lt
 from lighttime.constants import ARCSECOND, DAY, SPEED_OF_LIGHT
 from lighttime.crosscheck.scene import Scene, rotation_vector, turn
-from lighttime.crosscheck.suspects import CHOICES, suspects
+from lighttime.crosscheck.suspects import CHOICES, all_suspects
 from lighttime.crosscheck.suspects.frame import mean_earth
 from lighttime.crosscheck.suspects.time import Delayed, ephemeris_later, ephemeris_shifted
 from lighttime.earth import rotation
@@ -41,7 +41,7 @@ def scene_of(model: lt.Model = BASE, **changed: Any) -> Scene:
 
 
 SCENE = scene_of()
-ALL = {s.name: s for s in suspects(BASE, [HILLTOP], [ARRAY], 2020.9)}
+ALL = {s.name: s for s in all_suspects(BASE, [HILLTOP], [ARRAY], 2020.9)}
 
 
 def effect(name: str, scene: Scene = SCENE) -> Any:
@@ -108,7 +108,9 @@ _PLANETS = ("mercury", "venus", "mars", "jupiter", "saturn", "uranus", "neptune"
 def test_terms_that_ours_leaves_out() -> None:
     bare = replace(BASE, omit=("lunar_tide",))
     scene = replace(SCENE, model=bare)
-    (absent,) = (s for s in suspects(bare, [HILLTOP], [ARRAY]) if s.name == "lunar_tide_present")
+    (absent,) = (
+        s for s in all_suspects(bare, [HILLTOP], [ARRAY]) if s.name == "lunar_tide_present"
+    )
     full_minus_bare = -by_model(omit=("lunar_tide",))
     close(-absent.effect(scene), full_minus_bare, OFFSET_PS)
     assert not np.any(ALL["lunar_tide"].effect(scene))
@@ -279,7 +281,7 @@ def test_tagged_in_another_scale() -> None:
     when = SCENE.query.when
     for name, seconds in (("epoch_as_tai", 37.0), ("epoch_as_gps", 18.0), ("epoch_as_tt", 69.184)):
         earlier = replace(SCENE.query, when=when.shift(-seconds))
-        close(effect(name), SCENE.as_if(query=earlier), 1e-9)
+        close(effect(name), SCENE.as_if(query=earlier), 2e-3)
 
 
 def test_tag_of_another_event() -> None:
@@ -337,6 +339,24 @@ def test_station_velocity() -> None:
 def test_array_taken_in_local_scale() -> None:
     theirs = replace(SCENE.query, reflector=replace(ARRAY, scale="local"))
     close(effect("array_local_scale"), SCENE.as_if(query=theirs), 2e-3)
+
+
+def test_array_taken_in_mean_earth_axes() -> None:
+    theirs = tuple(mean_earth(ARRAY.xyz_m, "DE421").tolist())
+    moved = replace(SCENE.query, reflector=replace(ARRAY, xyz_m=theirs))
+    close(effect("array_mean_earth"), SCENE.as_if(query=moved), 0.3)  # of 2 000 000; the rest is troposphere
+
+
+@pytest.mark.parametrize("name", [n for n, s in ALL.items() if s.choice is not None])
+def test_choices_that_are_applied(name: str) -> None:
+    # the effect is read off a curve, the choice is made by solving again
+    close(effect(name), SCENE.as_if(*ALL[name].choice(SCENE)), 5e-3)  # type: ignore[misc]
+
+
+def test_rate_of_the_range() -> None:
+    step = 1e-3
+    rate = SCENE.as_if(query=SCENE.later(step)) - SCENE.as_if(query=SCENE.later(-step))
+    close(1e6 * effect("epoch_offset"), rate / (2.0 * step), 20.0)  # of 1 600 000
 
 
 def test_mean_earth_axes() -> None:
@@ -468,7 +488,7 @@ def test_one_way(quantity: Any, tag: str) -> None:
 
 
 def test_the_list() -> None:
-    names = [s.name for s in suspects(BASE, [HILLTOP], list(lt.reflectors()))]
+    names = [s.name for s in all_suspects(BASE, [HILLTOP], list(lt.reflectors()))]
     assert len(names) == len(set(names))
     assert len(CHOICES) >= 60
     families = {s.family for s in ALL.values()}

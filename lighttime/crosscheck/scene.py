@@ -63,6 +63,8 @@ class Scene:
         What is compared: the round trip in seconds of the station's timer, or one leg in TDB.
     variants : dict
         Models of others, kept from block to block because each builds its own tables.
+    kept : dict
+        What several suspects share on this block.
 
     Notes
     -----
@@ -74,6 +76,7 @@ class Scene:
     query: Query
     quantity: Quantity = "round_trip"
     variants: dict[Any, Model] = field(default_factory=dict, repr=False)
+    kept: dict[Any, Any] = field(default_factory=dict, repr=False)
 
     # -- what has been solved ----------------------------------------------------------------
 
@@ -200,7 +203,7 @@ class Scene:
 
     def as_if(self, model: Model | None = None, query: Query | None = None) -> Array:
         """The effect of another model or another reading of the query, solved anew."""
-        other = replace(self, model=model or self.model, query=query or self.query)
+        other = Scene(model or self.model, query or self.query, self.quantity)
         theirs, ours = other.parts(other.legs), self.parts(self.legs)
         if len(theirs) == len(ours):
             return PS * sum((a - b for a, b in zip(theirs, ours, strict=True)), self.zero)
@@ -212,6 +215,12 @@ class Scene:
         if key not in self.variants:
             self.variants[key] = make(self.model)
         return self.variants[key]
+
+    def shared(self, key: Any, make: Callable[[], Any]) -> Any:
+        """Something that several suspects need, made once for this block."""
+        if key not in self.kept:
+            self.kept[key] = make()
+        return self.kept[key]
 
     def later(self, seconds: Any) -> Query:
         """The same query for instants some seconds later."""

@@ -10,15 +10,13 @@ from typing import Any
 import erfa
 import numpy as np
 
-from lighttime.constants import ARCSECOND, J2000, L_B, L_G
+from lighttime.constants import ARCSECOND, J2000, L_B, L_G, SPEED_OF_LIGHT
 from lighttime.crosscheck.scene import Scene, rotation_vector
 from lighttime.crosscheck.suspects.suspect import Suspect
-from lighttime.crosscheck.suspects.terms import years_since_2000
+from lighttime.crosscheck.suspects.terms import lunar_tide_of, years_since_2000
 from lighttime.crosscheck.suspects.time import AS_DESCRIBED
 from lighttime.earth import rotation, tides
-from lighttime.model import Model
-from lighttime.query import Query
-from lighttime.vectors import Array, norm
+from lighttime.vectors import Array, dot, norm
 
 IGNORED = {1.0: "ignored", 2.0: "with the wrong sign", -1.0: "applied twice"}
 
@@ -183,15 +181,20 @@ def mean_earth(xyz_pa: Any, ephemeris_name: str) -> Array:
     return found
 
 
-def mean_earth_taken_as_principal(scene: Scene) -> tuple[Model, Query]:
-    """The array's mean-Earth coordinates used in principal axes."""
-    theirs = mean_earth(scene.reflector.xyz_m, scene.model.ephemeris.name)
-    array = replace(scene.reflector, xyz_m=tuple(theirs.tolist()))
-    return scene.model, replace(scene.query, reflector=array)
-
-
-def _mean_earth_effect(scene: Scene) -> Array:
-    return scene.as_if(*mean_earth_taken_as_principal(scene))
+def mean_earth_taken_as_principal(scene: Scene) -> Array:
+    """The array's mean-Earth coordinates used in principal axes; the tide is that of the place."""
+    ours = scene.reflector
+    theirs = mean_earth(ours.xyz_m, scene.model.ephemeris.name)
+    shift = np.broadcast_to((theirs - np.asarray(ours.xyz_m))[:, None], (3, scene.size))
+    if "lunar_tide" not in scene.model.omit:
+        for body in ("earth", "sun"):
+            there = lunar_tide_of(scene, body, place_m=theirs)
+            shift = shift + (there - lunar_tide_of(scene, body))
+    g = scene.lunar(shift)
+    if "reflector_contraction" not in scene.model.omit:
+        v = scene.t2.moon_velocity
+        g = g - v * (dot(v, g) / (2.0 * SPEED_OF_LIGHT**2))
+    return scene.moved(at2=g)
 
 
 def array_scaled(scene: Scene, factor: float) -> Array:
@@ -284,7 +287,7 @@ SUSPECTS: tuple[Suspect, ...] = (
     ),
     _frame(
         "array_mean_earth", "mean-Earth coordinates of the array taken as principal-axis ones",
-        "the axes of the array's coordinates, and of the libration", _mean_earth_effect,
+        "the axes of the array's coordinates, and of the libration", mean_earth_taken_as_principal,
         AS_DESCRIBED,
     ),
     _frame(

@@ -43,9 +43,9 @@ def scale(scene: Scene) -> Array:
 
 def late_epoch(scene: Scene) -> Array:
     """Epochs a microsecond late: the rate of the range."""
-    # symmetric over 2 s, so that the curvature drops out
-    rate = scene.as_if(query=scene.later(1.0)) - scene.as_if(query=scene.later(-1.0))
-    return 0.5 * US * rate
+    return scene.moved(
+        at1=US * scene.t1.velocity, at2=US * scene.t2.velocity, at3=US * scene.t3.velocity
+    )
 
 
 # -- the Earth -------------------------------------------------------------------------------------

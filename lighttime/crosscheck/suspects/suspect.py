@@ -5,8 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
-from lighttime.crosscheck.scene import Choice, Effect, Scene
-from lighttime.vectors import Array
+from lighttime.crosscheck.scene import Choice, Effect
 
 FAMILIES = ("term", "time", "frame", "solution", "constant", "ephemeris", "offset")
 
@@ -55,28 +54,3 @@ class Suspect:
 
     def __str__(self) -> str:
         return f"{self.name}: {self.says}"
-
-
-def chosen(
-    name: str,
-    says: str,
-    look_for: str,
-    choice: Choice,
-    family: str = "time",
-    large: bool = True,
-) -> Suspect:
-    """A suspect whose effect is found by solving again with another model or query."""
-
-    def effect(scene: Scene) -> Array:
-        model, query = choice(scene)
-        return scene.as_if(model, query)
-
-    return Suspect(
-        name,
-        family,
-        says,
-        look_for,
-        effect,
-        readings={1.0: "as described"},
-        choice=choice if large else None,
-    )

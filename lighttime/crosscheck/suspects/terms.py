@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import replace
 from functools import partial
+from typing import Any
 
 import numpy as np
 
@@ -117,14 +118,18 @@ def without_lunar_tide_of(scene: Scene, body: str) -> Array:
     return scene.moved(at2=-scene.lunar(lunar_tide_of(scene, body)))
 
 
-def lunar_tide_of(scene: Scene, body: str, **love: float) -> Array:
-    """The tide of one body (``"earth"``, ``"sun"``) in principal axes, permanent part included."""
+def lunar_tide_of(scene: Scene, body: str, place_m: Any = None, **love: float) -> Array:
+    """The tide of one body (``"earth"``, ``"sun"``) in principal axes, permanent part included.
+
+    At the array, or at another place (3,), with our Love numbers or others.
+    """
+    place = scene.reflector.xyz_m if place_m is None else place_m
     gm, to_axes = scene.model.ephemeris.gm, rotation.transpose(scene.lunar_axes)
     earth, sun = (rotation.rotate(to_axes, scene.selenocentric(b)) for b in ("earth", "sun"))
     numbers = {"h2": scene.model.moon_h2, "l2": scene.model.moon_l2} | love
     masses = {"gm_earth": gm("earth"), "gm_sun": gm("sun")}
     return lunar_tide(
-        np.asarray(scene.reflector.xyz_m)[:, None],
+        np.asarray(place)[:, None],
         earth,
         sun,
         gm("moon"),

@@ -17,8 +17,9 @@ from lighttime.constants import (
     MJD_ZERO,
     TT_MINUS_TAI,
 )
-from lighttime.crosscheck.scene import QUANTITIES, Choice, Scene
-from lighttime.crosscheck.suspects.suspect import Suspect, chosen
+from lighttime.crosscheck.curves import EPHEMERIS_NODES, EPOCH_NODES, Curve
+from lighttime.crosscheck.scene import QUANTITIES, Scene
+from lighttime.crosscheck.suspects.suspect import Suspect
 from lighttime.earth.series import EarthOrientation, PoleAndUT1
 from lighttime.model import Model
 from lighttime.query import Query
@@ -52,14 +53,20 @@ def tdb_minus_tai(scene: Scene) -> Array:
     return offset
 
 
-def tagged_in(scene: Scene, scale_minus_tai: Callable[[Scene], Any]) -> tuple[Model, Query]:
-    """The number that stands for UTC taken as a reading of another scale."""
-    return scene.model, scene.later(utc_minus_tai(scene) - scale_minus_tai(scene))
+def epoch_curve(scene: Scene) -> Curve:
+    """The range as a function of a shift of the epochs."""
+    return scene.shared(  # type: ignore[no-any-return]
+        "epoch_curve",
+        lambda: Curve.through(EPOCH_NODES, lambda s: scene.as_if(query=scene.later(s))),
+    )
 
 
-def tagged_later(scene: Scene, seconds: float) -> tuple[Model, Query]:
-    """Every instant some seconds later."""
-    return scene.model, scene.later(seconds)
+def ephemeris_curve(scene: Scene) -> Curve:
+    """The range as a function of a shift of the time of the ephemeris."""
+    return scene.shared(  # type: ignore[no-any-return]
+        "ephemeris_curve",
+        lambda: Curve.through(EPHEMERIS_NODES, lambda s: scene.as_if(*ephemeris_later(scene, s))),
+    )
 
 
 def tagged_at(scene: Scene, tag: Any) -> tuple[Model, Query]:
@@ -102,21 +109,6 @@ def ephemeris_later(scene: Scene, seconds: float) -> tuple[Model, Query]:
         return replace(model, earth_orientation=series)
 
     return scene.variant(("ephemeris_later", seconds), make), scene.later(seconds)
-
-
-def without_leap_seconds(scene: Scene) -> tuple[Model, Query]:
-    """TAI - UTC taken as zero on the way to TT: by its value at the first of the instants."""
-    return ephemeris_later(scene, float(utc_minus_tai(scene)[0]))
-
-
-def without_32_184(scene: Scene) -> tuple[Model, Query]:
-    """TAI used as TT."""
-    return ephemeris_later(scene, -TT_MINUS_TAI)
-
-
-def utc_as_tdb(scene: Scene) -> tuple[Model, Query]:
-    """UTC used as the argument of the ephemeris."""
-    return ephemeris_later(scene, float(utc_minus_tai(scene)[0]) - TT_MINUS_TAI)
 
 
 def ephemeris_shifted(scene: Scene, at1: Array, at2: Array, at3: Array) -> Array:
@@ -191,78 +183,113 @@ def _at_0h(first: Array, second: Array, x: Array) -> Array:
     return first
 
 
+# -- shifts ----------------------------------------------------------------------------------------
+
+Shift = Callable[[Scene], Any]
+"""From a scene to seconds, one number or one for each range."""
+
+
+def from_tai(scale_minus_tai: Callable[[Scene], Any]) -> Shift:
+    """How much later the instants are if the numbers are readings of another scale than UTC."""
+    return lambda scene: utc_minus_tai(scene) - scale_minus_tai(scene)
+
+
+def by(seconds: float) -> Shift:
+    """The same for all."""
+    return lambda scene: seconds
+
+
 # -- the list --------------------------------------------------------------------------------------
 
 
-def _tag(name: str, says: str, look_for: str, choice: Choice) -> Suspect:
-    return chosen(name, says, f"{look_for} (the whole computation is for another instant)", choice)
+def _epoch(name: str, says: str, look_for: str, shift: Shift) -> Suspect:
+    return Suspect(
+        name,
+        "time",
+        says,
+        f"{look_for} (the whole computation is for another instant)",
+        lambda scene: epoch_curve(scene).at(shift(scene)),
+        AS_DESCRIBED,
+        choice=lambda scene: (scene.model, scene.later(shift(scene))),
+    )
 
 
-def _ephemeris(name: str, says: str, look_for: str, choice: Choice) -> Suspect:
-    return chosen(name, says, f"{look_for} (Earth rotation is right, the Moon is not)", choice)
+def _event(name: str, event: str) -> Suspect:
+    def choice(scene: Scene) -> tuple[Model, Query]:
+        return tagged_at(scene, name.removeprefix("epoch_at_"))
+
+    def effect(scene: Scene) -> Array:
+        model, query = choice(scene)
+        return scene.zero if query is scene.query else scene.as_if(model, query)
+
+    return Suspect(
+        name, "time", f"epochs taken as the instants of {event}",
+        "which of the three events the epoch tags", effect, AS_DESCRIBED, choice=choice,
+    )  # fmt: skip
+
+
+def _ephemeris(name: str, says: str, look_for: str, shift: Shift) -> Suspect:
+    return Suspect(
+        name,
+        "time",
+        says,
+        f"{look_for} (Earth rotation is right, the Moon is not)",
+        lambda scene: ephemeris_curve(scene).at(shift(scene)),
+        AS_DESCRIBED,
+        choice=lambda scene: ephemeris_later(scene, float(np.ravel(shift(scene))[0])),
+    )
 
 
 SUSPECTS: tuple[Suspect, ...] = (
-    _tag(
+    _epoch(
         "epoch_as_tai", "epochs taken as TAI", "where the epochs are read: no UTC to TAI",
-        partial(tagged_in, scale_minus_tai=lambda scene: 0.0),
+        from_tai(lambda scene: 0.0),
     ),
-    _tag(
-        "epoch_as_gps", "epochs taken as GPS time", "where the epochs are read: GPS week and second",
-        partial(tagged_in, scale_minus_tai=lambda scene: GPS_MINUS_TAI),
+    _epoch(
+        "epoch_as_gps", "epochs taken as GPS time", "where the epochs are read: GPS time or UTC",
+        from_tai(lambda scene: GPS_MINUS_TAI),
     ),
-    _tag(
+    _epoch(
         "epoch_as_tt", "epochs taken as TT", "where the epochs are read: no UTC to TT",
-        partial(tagged_in, scale_minus_tai=lambda scene: TT_MINUS_TAI),
+        from_tai(lambda scene: TT_MINUS_TAI),
     ),
-    _tag(
+    _epoch(
         "epoch_as_tdb", "epochs taken as TDB", "where the epochs are read: no UTC to TDB",
-        partial(tagged_in, scale_minus_tai=tdb_minus_tai),
+        from_tai(tdb_minus_tai),
     ),
-    _tag(
+    _epoch(
         "epoch_as_ut1", "epochs taken as UT1", "where the epochs are read: UT1-UTC subtracted?",
-        partial(tagged_in, scale_minus_tai=ut1_minus_tai),
+        from_tai(ut1_minus_tai),
     ),
-    _tag(
+    _epoch(
         "epoch_second_early", "epochs one second early", "the reading of seconds; a leap second",
-        partial(tagged_later, seconds=-1.0),
+        by(-1.0),
     ),
-    _tag(
+    _epoch(
         "epoch_second_late", "epochs one second late", "the reading of seconds; a leap second",
-        partial(tagged_later, seconds=1.0),
+        by(1.0),
     ),
-    _tag(
-        "epoch_at_transmit", "epochs taken as the instants of transmission",
-        "which of the three events the epoch tags", partial(tagged_at, tag="transmit"),
-    ),
-    _tag(
-        "epoch_at_bounce", "epochs taken as the instants of the bounce",
-        "which of the three events the epoch tags", partial(tagged_at, tag="bounce"),
-    ),
-    _tag(
-        "epoch_at_receive", "epochs taken as the instants of reception",
-        "which of the three events the epoch tags", partial(tagged_at, tag="receive"),
-    ),
+    _event("epoch_at_transmit", "transmission"),
+    _event("epoch_at_bounce", "the bounce"),
+    _event("epoch_at_receive", "reception"),
     _ephemeris(
         "leap_second_missing", "TAI-UTC one second too small on the way to TT",
-        "the table of leap seconds: is the last one in it?",
-        partial(ephemeris_later, seconds=-1.0),
+        "the table of leap seconds: is the last one in it?", by(-1.0),
     ),
     _ephemeris(
         "leap_second_extra", "TAI-UTC one second too large on the way to TT",
-        "the table of leap seconds: one too many, or applied on the wrong day",
-        partial(ephemeris_later, seconds=1.0),
+        "the table of leap seconds: one too many, or applied on the wrong day", by(1.0),
     ),
     _ephemeris(
         "tt_without_leap_seconds", "TT made from UTC without leap seconds",
-        "TT = UTC + 32.184 s where it should be TAI + 32.184 s", without_leap_seconds,
+        "TT = UTC + 32.184 s where it should be TAI + 32.184 s", utc_minus_tai,
     ),
     _ephemeris(
-        "tai_as_tt", "TAI used as TT", "the 32.184 s between TAI and TT", without_32_184
+        "tai_as_tt", "TAI used as TT", "the 32.184 s between TAI and TT", by(-TT_MINUS_TAI),
     ),
     _ephemeris(
         "utc_as_tdb", "UTC used as the argument of the ephemeris",
-        "what time the ephemeris is asked for", utc_as_tdb,
+        "what time the ephemeris is asked for", lambda scene: utc_minus_tai(scene) - TT_MINUS_TAI,
     ),
     Suspect(
         "tt_for_tdb", "time", "TT in the place of TDB as the argument of the ephemeris",

@@ -190,6 +190,9 @@ class _Reader:
         values = {name: self._numbers(name) for name in self.layout.columns}
         count = self._given(values)
         values = {name: column[:count] for name, column in values.items()}
+        midnight = values["mjd"] % 1.0 == 0.0
+        if not midnight.all():
+            self._fail(np.flatnonzero(~midnight)[0], "the values are not of 0h UTC")
         steps = np.flatnonzero(np.diff(values["mjd"]) != 1.0)
         if steps.size:
             self._fail(steps[0] + 1, "the day does not follow that of the line before")
@@ -269,6 +272,8 @@ def joined(parts: list[Days], path: str | PathLike[str]) -> dict[str, Any]:
         The attributes of an `EarthOrientation` by name.
     """
     parts = [part for part in parts if part.kind.size]
+    if not parts:
+        raise FileError(path, None, "no day with values")
     values: dict[str, Any] = {
         key: np.concatenate([part.values[key] for part in parts]) for key in parts[0].values
     }

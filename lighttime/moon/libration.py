@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from lighttime.vectors import Array, cross
+from lighttime.vectors import Array
 
 Matrix = NDArray[np.float64]
 
@@ -57,8 +57,3 @@ def angular_velocity(angles: Array, rates: Array) -> Array:
     cf, sf = np.cos(phi), np.sin(phi)
     ct, st = np.cos(theta), np.sin(theta)
     return np.array([dtheta * cf + dpsi * sf * st, dtheta * sf - dpsi * cf * st, dphi + dpsi * ct])
-
-
-def velocity(omega: Array, r: Array) -> Array:
-    """omega x r: velocity of a point fixed to a body that turns with `omega`."""
-    return cross(omega, r)

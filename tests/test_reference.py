@@ -1,7 +1,7 @@
 """The fast path against the reference set: two hundred round trips by its extended-precision twin.
 
 The set is in validation/reference and says what each number is. Bars are those of the accuracy
-page; what has none is held to a few times what was measured.
+page; what has none, or is much better, is held to a few times what was measured.
 """
 
 from __future__ import annotations
@@ -29,6 +29,9 @@ import rungs  # noqa: E402
 EVENTS = {"transmit": "t1", "bounce": "t2", "receive": "t3"}
 FEMTOSECOND = 1e-15
 LIMITS = rungs.BARS | {
+    "Moon from the Earth": 1.5e-7,
+    "change of TDB-TT, t1 to t3": 1e-17,
+    "gravity, earth": 1e-20,
     "X, Y": 1e-17,
     "s": 1e-21,
     "Earth rotation angle": 2e-15,
@@ -123,6 +126,18 @@ def test_every_tenth_with_tables(twin, cases):
         assert abs(seconds - twin[case.number]["answer_s"]) < 2.0 * FEMTOSECOND
     built = re.findall(r"(\d+) days built", model.tables())
     assert sum(map(int, built)) >= len(cases[::10])
+
+
+def test_found_event_beside_a_seam():
+    # Transmission 18 ns before records of DE421 end; the Earth jumps there by 40 micrometres, and
+    # an event that the solver carries over the seam along its velocity is off by 120 fs.
+    station = lt.Station.from_geodetic("Ridge", -24.6, -70.4, 2400.0)
+    when = lt.Epoch.parse("1977-10-24T00:00:02.550803997", "tdb")
+    inputs = station, lt.reflector("Lunokhod 2"), "receive", lt.Weather(979.14, 298.27, 0.77)
+    twin = lt.exact.round_trip(when, *inputs, digits=25)
+    before_s = (mpmath.mpf(2443440.5) - twin.worksheet()["t1_tdb_jd"]) * 86400
+    assert 1e-9 < before_s < 1e-7
+    assert abs(lt.Model().round_trip(when, *inputs).seconds - twin.seconds) < 2.0 * FEMTOSECOND
 
 
 @pytest.mark.parametrize("number", [2, 4])

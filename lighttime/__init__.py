@@ -12,6 +12,7 @@ from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
 from lighttime.answer import OneWay, RoundTrip
+from lighttime.crosscheck import crosscheck
 from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
 from lighttime.earth.residual_motion import ResidualMotion
 from lighttime.earth.series import EarthOrientation
@@ -71,6 +72,7 @@ __all__ = [
     "UnknownNameError",
     "Weather",
     "__version__",
+    "crosscheck",
     "one_way",
     "read_sinex",
     "reflector",

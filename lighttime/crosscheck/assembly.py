@@ -144,10 +144,6 @@ def _notes(bench: Bench, base: Base, question: Question, found: Answered) -> tup
         notes.append(f"{low} ranges are to an array below the horizon")
     if len(found.inquiry.best.support) == question.most:
         notes.append(f"{question.most} findings is the most that was looked for at once")
-    if not ranges.weather and bench.weather is None and "troposphere" not in bench.model.omit:
+    if not ranges.weather and "troposphere" not in bench.model.omit:
         notes.append("no weather was given: ours has no troposphere")
-    for group in bench.groups():
-        for note in (group.array.axes_note(bench.model.ephemeris.name),):
-            if note and note not in notes:
-                notes.append(note)
     return tuple(notes)

@@ -78,7 +78,7 @@ class Bench:
     model : Model
     stations, arrays : mapping of str to Station, mapping of str to Reflector
         By plain name; a single one serves all rows when the table names none.
-    tag, weather, wavelength_nm
+    tag, wavelength_nm
         For rows that do not say.
     """
 
@@ -87,7 +87,6 @@ class Bench:
     stations: Mapping[str, Station]
     arrays: Mapping[str, Reflector]
     tag: str = "transmit"
-    weather: Weather | None = None
     wavelength_nm: float = 532.0
     variants: dict[Any, dict[Any, Model]] = field(default_factory=dict, repr=False)
 
@@ -143,15 +142,7 @@ class Bench:
 
     def _weather(self, rows: Any) -> Weather | None:
         given = self.ranges.weather
-        if given:
-            pressure, kelvin, humidity = (v[rows] for v in given.values())
-            return Weather(pressure, kelvin, humidity)
-        weather = self.weather
-        if weather is None or weather.shape == ():
-            return weather
-        values = (weather.pressure_hpa, weather.temperature_k, weather.relative_humidity)
-        full = (np.broadcast_to(v, (len(self.ranges),))[rows] for v in values)
-        return Weather(*full)
+        return Weather(**{name: values[rows] for name, values in given.items()}) if given else None
 
     def scenes(
         self, rows: Any = None, applied: Sequence[Suspect] = (), progress: Progress | None = None
@@ -196,7 +187,7 @@ class Bench:
     def too_low(self) -> dict[int, str]:
         """Rows at which the array is too low for a troposphere."""
         low: dict[int, str] = {}
-        geometry = replace(self, weather=None, ranges=replace(self.ranges, weather={}))
+        geometry = replace(self, ranges=replace(self.ranges, weather={}))
         for rows, scene in geometry.scenes():
             for sine in scene.sines:
                 angle = np.arcsin(sine) / DEGREE

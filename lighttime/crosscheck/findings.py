@@ -8,15 +8,13 @@ from math import inf, sqrt
 
 import numpy as np
 
+from lighttime.crosscheck import CHANCE, MOST
 from lighttime.crosscheck.chance import of_any, tail
 from lighttime.crosscheck.evidence import Folding
-from lighttime.crosscheck.search import MOST, improved, rivals, search
+from lighttime.crosscheck.search import improved, rivals, search
 from lighttime.crosscheck.selection import Hypothesis, Trial
 from lighttime.crosscheck.suspects import Suspect
 from lighttime.vectors import Array
-
-CHANCE = 0.005
-"""A find that noise would make with more than this probability is none."""
 
 ODDS = 100.0
 """Explanations that are less than so many times less probable than the best are told with it."""

@@ -15,7 +15,7 @@ from lighttime.crosscheck.decimals import Numbers, numbers, plain_floats, texts
 from lighttime.crosscheck.tables import RawTable, open_table
 from lighttime.errors import InputError, LighttimeError
 from lighttime.model import TAGS
-from lighttime.path.weather import HUMIDITY, PRESSURE_HPA, TEMPERATURE_K
+from lighttime.path.weather import HUMIDITY, PRESSURE_HPA, TEMPERATURE_K, Weather
 from lighttime.timescales import SCALES, Epoch, twopart
 from lighttime.timescales.text import parse_iso
 from lighttime.vectors import Array
@@ -143,10 +143,43 @@ def refusal(source: str, row_word: str, wrong: tuple[Unreadable, ...], count: in
     return InputError(f"ranges ({source})", f"{shown}{more}", rest)
 
 
+@dataclass(frozen=True, eq=False)
+class Defaults:
+    """What is taken where no column says: weather, and one sigma of the ranges in ps."""
+
+    weather: Weather | None = None
+    sigma_ps: Any = None
+
+    def weather_of(self, count: int) -> dict[str, Array]:
+        """As columns."""
+        weather = self.weather
+        if weather is None:
+            return {}
+        if weather.shape not in ((), (count,)):
+            raise InputError("weather", f"values of shape {weather.shape}", f"shape ({count},)")
+        return {name: np.broadcast_to(getattr(weather, name), (count,)) for name in WEATHER}
+
+    def sigma_of(self, count: int) -> Array | None:
+        """As a column."""
+        if self.sigma_ps is None:
+            return None
+        try:
+            sigma = np.broadcast_to(np.asarray(self.sigma_ps, dtype=float), (count,))
+        except (TypeError, ValueError):
+            raise InputError("sigma_ps", self.sigma_ps, f"a number, or {count} numbers") from None
+        if not np.all((sigma > 0.0) & np.isfinite(sigma)):
+            raise InputError("sigma_ps", self.sigma_ps, "above 0, ps")
+        return sigma
+
+
+NO_DEFAULTS = Defaults()
+
+
 def read_ranges(
     source: Any,
     columns: Mapping[str, str] | None = None,
     skip_unreadable: bool = False,
+    defaults: Defaults = NO_DEFAULTS,
 ) -> Ranges:
     """Read a table of ranges.
 
@@ -158,6 +191,8 @@ def read_ranges(
         What is in which column: see `lighttime.crosscheck.columns`.
     skip_unreadable : bool
         Leave out rows that cannot be used, and say which; otherwise they are an error.
+    defaults : Defaults
+        What is taken where no column says.
 
     Raises
     ------
@@ -188,7 +223,7 @@ def read_ranges(
     values = numbers(table.columns[found.value], found.unit * whole)
     note(found.value, values.wrong)
     note(found.value, _where(~(values.high > 0.0), "is not above 0"))
-    sigma = None
+    sigma = defaults.sigma_of(count)
     if found.sigma is not None:
         read = numbers(table.columns[found.sigma], found.sigma_unit * whole * 10**12)
         note(found.sigma, read.wrong)
@@ -196,7 +231,7 @@ def read_ranges(
         sigma = read.high
     when, bad_epochs = _epochs(table, found)
     note(found.epoch, bad_epochs)
-    weather = _weather(table, found, note)
+    weather = _weather(table, found, note) or defaults.weather_of(count)
     wavelength = None
     if "wavelength_nm" in found.others:
         wavelength, reasons = plain_floats(table.columns[found.others["wavelength_nm"]])

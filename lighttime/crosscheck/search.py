@@ -7,11 +7,9 @@ from math import inf
 
 import numpy as np
 
+from lighttime.crosscheck import MOST
 from lighttime.crosscheck.selection import HOPELESS, Exact, Hypothesis, Support, Trial
 from lighttime.vectors import Array
-
-MOST = 6
-"""Suspects in a hypothesis."""
 
 BEAM = 8
 """Hypotheses of each size that are followed, by score and by what they leave."""

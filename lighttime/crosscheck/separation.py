@@ -244,14 +244,9 @@ def _year(bench: Bench) -> Epoch:
 
 def _usual_weather(bench: Bench) -> Weather | None:
     given = bench.ranges.weather
-    if given:
-        pressure, kelvin, humidity = (float(np.median(v)) for v in given.values())
-        return Weather(pressure, kelvin, humidity)
-    weather = bench.weather
-    if weather is None or weather.shape == ():
-        return weather
-    values = (weather.pressure_hpa, weather.temperature_k, weather.relative_humidity)
-    return Weather(*(float(np.median(v)) for v in values))
+    if not given:
+        return None
+    return Weather(**{name: float(np.median(values)) for name, values in given.items()})
 
 
 def _kinds(setting: Setting, plans: Sequence[Plan]) -> list[tuple[str, Any]]:

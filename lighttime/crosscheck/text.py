@@ -72,10 +72,11 @@ def _rest_sentence(report: Report) -> str:
             f"What remains, {sized(rest.rms_ps)}, is more than noise (neighbours in {rest.order} "
             f"agree): something that is not on the list, or not as it is there."
         )
+    noise = f"What remains, {sized(rest.rms_ps)}, is noise."
     if report.rounding and not report.sigma_stated:
-        causes = ", or ".join(r.what for r in report.rounding)
-        return f"What remains, {sized(rest.rms_ps)}, is noise of the size of {causes}."
-    return f"What remains, {sized(rest.rms_ps)}, is noise."
+        causes = "; or ".join(r.what for r in report.rounding)
+        noise += f" Rounding makes noise of this size: {causes}."
+    return noise
 
 
 def told(finding: Finding) -> str:

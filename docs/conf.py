@@ -24,6 +24,7 @@ extensions = [
     "sphinx.ext.viewcode",
     "command_help",
     "mathml",
+    "signatures",
 ]
 exclude_patterns = ["_build", "examples", "figures/*.md"]
 default_role = "py:obj"
@@ -39,7 +40,7 @@ myst_substitutions = json.loads((HERE / "figures" / "sizes.json").read_text())["
 
 autodoc_typehints = "none"  # types are in the docstrings
 autodoc_member_order = "bysource"
-autodoc_default_options = {"members": True, "show-inheritance": False}
+autodoc_default_options = {"members": True}
 autosummary_generate = False
 numpydoc_show_class_members = False
 numpydoc_xref_param_type = False
@@ -61,6 +62,5 @@ html_theme_options = {
     "footer_start": ["copyright"],
     "footer_end": [],
     "show_nav_level": 2,
-    "pygments_light_style": "tango",
-    "pygments_dark_style": "github-dark",
 }
+html_sidebars = {page: [] for page in ("index", "start", "timescales", "accuracy")}

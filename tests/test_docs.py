@@ -91,11 +91,13 @@ def test_python_examples(page: Path) -> None:
     runner = doctest.DocTestRunner(Checker(), optionflags=FLAGS, verbose=False)
     names: dict[str, object] = {"__name__": "__main__"}
     told: list[str] = []
-    for line, body in blocks(page, "python"):
-        if ">>>" in body:
-            test = parser.get_doctest(body, names, named(page), str(page), line)
-            runner.run(test, out=told.append, clear_globs=False)
-            names = test.globs
+    pieces = [(line, body) for line, body in blocks(page, "python") if ">>>" in body]
+    for module in re.findall(r"^>>> (?:import|from) (\w+)", "".join(b for _, b in pieces), re.M):
+        pytest.importorskip(module)
+    for line, body in pieces:
+        test = parser.get_doctest(body, names, named(page), str(page), line)
+        runner.run(test, out=told.append, clear_globs=False)
+        names = test.globs
     assert not told, "".join(told)
 
 

@@ -41,11 +41,15 @@ TIMES = ((1.0, "s", 1.0), (1e-9, "ns", 1e9), (0.0, "ps", 1e12))
 """From which size on which unit is used, and the factor to it."""
 
 
-def told(least_mm: float, most_mm: float) -> str:
-    """Two limits as a person says them: one-way length, then two-way time."""
+def told(name: str, least_mm: float, most_mm: float) -> dict[str, str]:
+    """Two limits as a person says them: one-way length, two-way time, and both in a line."""
     lengths = in_a_unit(LENGTHS, least_mm, most_mm)
     times = in_a_unit(TIMES, least_mm / MM_ONE_WAY, most_mm / MM_ONE_WAY)
-    return f"{lengths} one-way ({times} two-way)"
+    return {
+        f"length_{name}": lengths,
+        f"time_{name}": times,
+        f"size_{name}": f"{lengths} one-way ({times} two-way)",
+    }
 
 
 def in_a_unit(units: tuple[tuple[float, str, float], ...], least: float, most: float) -> str:
@@ -61,15 +65,16 @@ def rounded(value: float) -> str:
         return "0"
     decimals = 1 - int(np.floor(np.log10(abs(value))))
     decimals += f"{abs(value):e}"[0] == "1"
-    text = f"{value:.{max(decimals, 0)}f}" if decimals > 0 else f"{round(value, decimals):.0f}"
-    return text.replace("-", "\N{MINUS SIGN}")
+    decimals += abs(value) > 1e5  # kilometres to the Moon
+    text = f"{value:.{decimals}f}" if decimals > 0 else f"{round(value, decimals):_.0f}"
+    return text.replace("-", "\N{MINUS SIGN}").replace("_", "\N{NO-BREAK SPACE}")
 
 
 def main() -> int:
     found = extremes()
     sizes = {
         "limits_mm": {n: [float(f"{mm:.4g}") for mm in pair] for n, pair in found.items()},
-        "told": {f"size_{name}": told(*pair) for name, pair in found.items()},
+        "told": {key: text for n, pair in found.items() for key, text in told(n, *pair).items()},
     }
     text = json.dumps(sizes, indent=2, ensure_ascii=False) + "\n"
     if "--check" in sys.argv[1:]:

@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+import struct
 from collections.abc import Mapping
+from contextlib import closing
 from importlib.resources import files
+from io import BufferedReader
 from os import PathLike, fspath
 from types import MappingProxyType
 from typing import Any
@@ -15,6 +18,7 @@ from lighttime.constants import DAY, J2000
 from lighttime.ephemeris.bodies import PLANETS, Ephemeris, au3_per_day2
 from lighttime.ephemeris.chebyshev import Records
 from lighttime.errors import FileError
+from lighttime.textfile import opened
 
 Array = NDArray[np.float64]
 
@@ -23,6 +27,9 @@ KILOMETRE = 1000.0
 _PLANET_NUMBER = {"mercury": 1, "venus": 2, "mars": 4, "jupiter": 5, "saturn": 6, "uranus": 7}
 _PLANET_NUMBER |= {"neptune": 8, "pluto": 9}
 _SUN, _EMB, _EARTH, _MOON = 10, 3, 399, 301
+
+_FARTHEST_S = 1e12
+"""Some 30,000 years: no ephemeris reaches further from J2000."""
 
 TWO_PI = (2.0 * np.pi, 2.4492935982947064e-16)
 """2 pi as the sum of two float64."""
@@ -94,13 +101,13 @@ def open_files(
             ) from None
         return _records(segment, KILOMETRE, f"{bsp} {center}->{target}", bsp)
 
-    earth, moon = records(_EMB, _EARTH), records(_EMB, _MOON)
-    barycentric = {"earth_moon_barycentre": records(0, _EMB), "sun": records(0, _SUN)}
-    barycentric |= {p: records(0, n) for p, n in _PLANET_NUMBER.items() if (0, n) in segments}
+    with closing(kernel.daf.file):  # what was found stays mapped
+        earth, moon = records(_EMB, _EARTH), records(_EMB, _MOON)
+        barycentric = {"earth_moon_barycentre": records(0, _EMB), "sun": records(0, _SUN)}
+        barycentric |= {p: records(0, n) for p, n in _PLANET_NUMBER.items() if (0, n) in segments}
     known = dict(Ephemeris.default().constants)
     stated = {} if constants is None else dict(constants)
     orientation = None if orientation is None else fspath(orientation)
-    kernel.daf.file.close()  # what was found stays mapped
     name = bsp.replace("\\", "/").rsplit("/", 1)[-1].rsplit(".", 1)[0]
     return Ephemeris(
         name=name,
@@ -118,15 +125,37 @@ def open_files(
 def _opened(kind: Any, path: str) -> Any:
     from jplephem.daf import DAF
 
+    file = opened(path)  # the reader owns it
     try:
-        file = open(path, "rb")  # noqa: SIM115 (the reader owns it)
-    except OSError as error:
-        raise FileError(path, None, f"cannot be read: {error.strerror}") from None
-    try:
+        _check_head(file)
         return kind(DAF(file))
     except Exception as error:  # whatever a broken file makes the reader do
         file.close()
         raise FileError(path, None, f"not an ephemeris file: {error}") from None
+
+
+def _check_head(file: BufferedReader) -> None:
+    """What jplephem takes on trust: how long a summary is, and that their chain has an end.
+
+    Source: the published description of the DAF format: ND, NI and the first record of summaries
+    are integers at bytes 8, 12 and 76; a record begins with the number of the next, 0 after the
+    last.
+    """
+    head = file.read(80)
+    for order in "<>":
+        doubles, integers, record = struct.unpack(f"{order}8xII60xI", head.ljust(80, b"\0"))
+        if doubles == 2 and integers in (5, 6):  # of SPK 6, of PCK 5
+            break
+    else:
+        raise ValueError("its head is not that of an SPK or PCK file")
+    seen: set[int] = set()
+    while record:
+        if record in seen or record < 0:
+            raise ValueError("its summaries have no end")
+        seen.add(record)
+        file.seek(1024 * (record - 1))
+        record = int(*struct.unpack(f"{order}d", file.read(8)))
+    file.seek(0)
 
 
 def _records(segment: Any, scale: float, name: str, path: str) -> Records:
@@ -139,9 +168,14 @@ def _records(segment: Any, scale: float, name: str, path: str) -> Records:
         raise FileError(path, None, f"segment {name} is not made of Chebyshev records (2 or 3)")
     components = 3 if segment.data_type == 2 else 6  # type 3 carries velocities as well
     daf = segment.daf
-    first_s, span_s, size, count = daf.read_array(segment.end_i - 3, segment.end_i)
-    rows = daf.map_array(segment.start_i, segment.end_i - 4).reshape(int(count), int(size))
-    coefficients = rows[:, 2:].reshape(int(count), components, -1)[:, :3]
+    try:
+        first_s, span_s, size, count = daf.read_array(segment.end_i - 3, segment.end_i)
+        rows = daf.map_array(segment.start_i, segment.end_i - 4).reshape(int(count), int(size))
+        coefficients = rows[:, 2:].reshape(int(count), components, -1)[:, :3]
+        if not (abs(first_s) < _FARTHEST_S and 0.0 < span_s < _FARTHEST_S and coefficients.size):
+            raise ValueError(f"{count} records of {span_s} s from {first_s} s on")
+    except Exception as error:  # whatever a broken file makes the reader do
+        raise FileError(path, None, f"segment {name} is broken: {error}") from None
     return Records(J2000 + first_s / DAY, span_s / DAY, coefficients, scale, name)
 
 
@@ -161,11 +195,10 @@ def _orientation(path: str) -> Records:
     from jplephem.pck import PCK
 
     kernel = _opened(PCK, path)
-    if not kernel.segments:
-        raise FileError(path, None, "no orientation segment in it")
-    angles = _reduced(_records(kernel.segments[0], 1.0, f"{path} lunar orientation", path))
-    kernel.daf.file.close()
-    return angles
+    with closing(kernel.daf.file):
+        if not kernel.segments:
+            raise FileError(path, None, "no orientation segment in it")
+        return _reduced(_records(kernel.segments[0], 1.0, f"{path} lunar orientation", path))
 
 
 def _reduced(angles: Records) -> Records:

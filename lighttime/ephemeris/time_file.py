@@ -14,8 +14,12 @@ from lighttime.ephemeris.panels import Panels, states
 from lighttime.ephemeris.time_integral import TimeEphemeris
 from lighttime.ephemeris.time_rate import slowing, tdb_minus_tt_rate
 from lighttime.errors import FileError
+from lighttime.textfile import opened
 
 FORMAT = "lighttime time ephemeris 1"
+
+LARGEST = 64 * 2**20
+"""Bytes, unpacked: 300 years are some 6 MB."""
 
 SAME_RATE = 1e-16
 """Rates of one ephemeris agree to that (its asteroids are 4e-18); those of another do not."""
@@ -40,8 +44,7 @@ def save(time: TimeEphemeris, path: str | PathLike[str]) -> None:
 def read(path: str | PathLike[str], ephemeris: Ephemeris) -> TimeEphemeris:
     """See `TimeEphemeris.read`."""
     try:
-        with open(path, "rb") as raw, np.load(raw, allow_pickle=False) as file:
-            held = {name: file[name] for name in file.files}
+        held = _arrays(path)
         if str(held["format"]) != FORMAT:
             raise ValueError(f"format {held['format']}")
         start, days, error = (float(held[k]) for k in ("start_jd", "span_days", "error_s"))
@@ -49,9 +52,9 @@ def read(path: str | PathLike[str], ephemeris: Ephemeris) -> TimeEphemeris:
         name, origin = str(held["ephemeris"]), str(held["origin"])
         if not (np.isfinite(start) and days > 0.0 and len(series[0]) == len(series[1])):
             raise ValueError("spans that are none")
-    except OSError as error_:
-        raise FileError(fspath(path), None, f"cannot be read: {error_.strerror}") from None
-    except (ValueError, KeyError, EOFError, zipfile.BadZipFile) as error_:
+    except FileError:
+        raise
+    except Exception as error_:  # whatever a broken file makes its readers do
         raise FileError(fspath(path), None, f"not a time ephemeris: {error_}") from None
     earth, moon = (
         Records(start, days, coefficients, name=what)
@@ -62,6 +65,17 @@ def read(path: str | PathLike[str], ephemeris: Ephemeris) -> TimeEphemeris:
     if name != ephemeris.name or earth.start_jd < begin or earth.end_jd > end or _differs(time):
         raise FileError(fspath(path), None, f"integrated from {name}, not from {ephemeris!r}")
     return time
+
+
+def _arrays(path: str | PathLike[str]) -> dict[str, Any]:
+    with opened(path) as raw:
+        with zipfile.ZipFile(raw) as packed:
+            size = sum(entry.file_size for entry in packed.infolist())
+        if size > LARGEST:
+            raise ValueError(f"{size} bytes unpacked; allowed: {LARGEST}")
+        raw.seek(0)
+        with np.load(raw, allow_pickle=False) as file:
+            return {name: file[name] for name in file.files}
 
 
 def _series(coefficients: Any) -> Any:

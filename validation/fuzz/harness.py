@@ -28,6 +28,7 @@ READERS = (
     *(f"lighttime.earth.{name}" for name in ("sinex", "sinex_blocks", "sinex_site", "sinex_text")),
     *(f"lighttime.timescales.{name}" for name in ("text", "reading", "epoch", "leapseconds")),
     "lighttime.commands.epoch_file",
+    *(f"lighttime.ephemeris.{name}" for name in ("files", "time_file")),
 )
 with atheris.instrument_imports(include=[*READERS, "lighttime.crosscheck", "tomllib", "csv"]):
     for reader in READERS:  # the fuzzer sees the branches of what is imported here
@@ -35,7 +36,7 @@ with atheris.instrument_imports(include=[*READERS, "lighttime.crosscheck", "toml
 
 from lighttime.errors import LighttimeError  # noqa: E402 (not before)
 
-LONGEST_INPUT = 6000
+LONGEST_INPUT = 8000
 SLOWEST_S = 10
 MOST_MB = 500
 
@@ -82,6 +83,7 @@ def fuzz(
     path = Path(folder.name) / "input"
 
     def one(data: bytes) -> None:
+        path.unlink(missing_ok=True)  # a reader may still have the one before mapped
         path.write_bytes(data)
         try:
             read(path)

@@ -19,6 +19,10 @@ from lighttime.timescales import twopart
 from lighttime.vectors import Array
 
 
+SMALLEST = 1000
+"""So many decimals are taken."""
+
+
 class Numbers(NamedTuple):
     """Numbers as unevaluated sums, the last digit of each, and why some could not be read."""
 
@@ -118,6 +122,8 @@ def _exact(value: Any) -> tuple[Decimal | Fraction, float]:
         raise ValueError("is empty")
     if isinstance(value, str):
         try:
+            if "_" in value or not value.isascii():
+                raise InvalidOperation
             value = Decimal(value.strip().replace("D", "E").replace("d", "e"))
         except InvalidOperation:
             raise ValueError(f"{value!r} is no number") from None
@@ -128,7 +134,9 @@ def _exact(value: Any) -> tuple[Decimal | Fraction, float]:
             raise ValueError(f"{value} is not finite")
         if not abs(value) < Decimal("1e300"):
             raise ValueError(f"{value} is too large")
-        exponent = value.as_tuple().exponent
+        exponent = int(value.as_tuple().exponent)
+        if exponent < -SMALLEST:  # as a fraction it would have as many digits
+            raise ValueError(f"{value} is too small, or has too many decimals")
         return value, 10.0 ** float(exponent)
     if isinstance(value, (int, np.integer, Fraction)):
         return Fraction(value), 0.0

@@ -6,12 +6,14 @@ import csv
 import io
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
+from functools import partial
 from os import PathLike, fspath
 from typing import Any, TextIO
 
 import numpy as np
 
 from lighttime.errors import FileError, InputError
+from lighttime.textfile import opened
 
 ALLOWED = (
     "a path to a CSV or ECSV file, an open text file, an astropy Table, a pandas or polars "
@@ -22,6 +24,13 @@ DELIMITERS = (",", ";", "\t", "|")
 
 MOST_ROWS = 2_000_000
 """What is taken at once: it keeps the memory below 1.5 GB."""
+
+MOST_CELLS = 10 * MOST_ROWS
+LONGEST_LINE = 20_000
+"""Characters of a line of a file."""
+
+LONGEST_HEADER = 200_000
+"""Characters of an ECSV header."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -71,10 +80,8 @@ def open_table(source: Any) -> RawTable:
     if isinstance(source, (str, PathLike)):
         path = fspath(source)
         try:
-            with open(path, encoding="utf-8-sig", newline="") as file:
+            with io.TextIOWrapper(opened(path), encoding="utf-8-sig", newline="") as file:
                 return _read(file, str(path))
-        except OSError as error:
-            raise FileError(path, None, f"cannot be read: {error.strerror}") from None
         except UnicodeDecodeError:
             raise FileError(path, None, "not a text file (UTF-8)") from None
     if isinstance(source, io.TextIOBase) or hasattr(source, "readline"):
@@ -146,11 +153,19 @@ def _array(name: str, values: Any) -> Any:
 
 def _read(file: TextIO, name: str) -> RawTable:
     comments: list[str] = []
+    size = 0
     numbered: list[tuple[int, str]] = []
-    for number, line in enumerate(file, start=1):
+    for number, line in enumerate(iter(partial(file.readline, LONGEST_LINE + 1), ""), start=1):
+        if len(line) > LONGEST_LINE:
+            raise FileError(name, number, f"a line of more than {LONGEST_LINE} characters")
         text = line.rstrip("\r\n")
         if text.lstrip().startswith("#"):
-            comments.append(text.lstrip().removeprefix("#").removeprefix(" "))
+            if not comments or comments[0].startswith("%ECSV"):  # others are passed over
+                comments.append(text.lstrip().removeprefix("#").removeprefix(" "))
+                size += len(text)
+            if size > LONGEST_HEADER:
+                reason = f"an ECSV header of more than {LONGEST_HEADER} characters"
+                raise FileError(name, number, reason)
         elif text.strip():
             numbered.append((number, text))
             if len(numbered) > MOST_ROWS + 1:
@@ -165,6 +180,9 @@ def _read(file: TextIO, name: str) -> RawTable:
         raise FileError(name, numbered[0][0], f"more than one column is called {repeated[0]!r}")
     if _is_number(head[0]) or head[0][:4].isdigit():
         raise FileError(name, numbered[0][0], f"{head[0]!r} stands where columns are to be named")
+    if len(head) * len(numbered) > MOST_CELLS:
+        reason = f"{len(head)} columns of {len(numbered)} rows; allowed: {MOST_CELLS} cells"
+        raise FileError(name, None, reason)
     rows, lines, wrong = _rows(numbered[1:], delimiter, len(head))
     columns = {column: [row[k] for row in rows] for k, column in enumerate(head)}
     return RawTable(name, columns, np.array(lines, dtype=int), "line", header["units"], wrong)
@@ -214,8 +232,11 @@ def _ecsv_header(comments: list[str], name: str) -> dict[str, Any]:
 
     try:
         header = get_header_from_yaml([line for line in comments[1:] if not line.startswith("%")])
-    except Exception as error:  # whatever its YAML reader raises
+        described = header.get("datatype", [])
+        units = {d["name"]: str(d["unit"]) for d in described if "unit" in d and "name" in d}
+        delimiter = header.get("delimiter", " ")
+        if delimiter not in (" ", *DELIMITERS):
+            raise ValueError(f"a delimiter of {delimiter!r}")
+    except Exception as error:  # whatever its YAML reader raises, and what is no such header
         raise FileError(name, None, f"its ECSV header cannot be read: {error}") from None
-    described = header.get("datatype", [])
-    units = {d["name"]: str(d["unit"]) for d in described if "unit" in d and "name" in d}
-    return {"units": units, "delimiter": header.get("delimiter", " ")}
+    return {"units": units, "delimiter": delimiter}

@@ -28,9 +28,10 @@ READERS = (
     *(f"lighttime.earth.{name}" for name in ("sinex", "sinex_blocks", "sinex_site", "sinex_text")),
     *(f"lighttime.timescales.{name}" for name in ("text", "reading", "epoch", "leapseconds")),
     "lighttime.commands.epoch_file",
+    *(f"lighttime.crosscheck.{name}" for name in ("tables", "decimals", "ranges", "columns")),
     *(f"lighttime.ephemeris.{name}" for name in ("files", "time_file")),
 )
-with atheris.instrument_imports(include=[*READERS, "lighttime.crosscheck", "tomllib", "csv"]):
+with atheris.instrument_imports(include=[*READERS, "tomllib", "csv"]):
     for reader in READERS:  # the fuzzer sees the branches of what is imported here
         import_module(reader)
 

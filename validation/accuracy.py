@@ -95,9 +95,9 @@ def examine(case: Case) -> Result:
         case.when, **case.inputs, earth_orientation=case.series, digits=DIGITS
     )
     tagged = f"t{TAGS.index(case.tag) + 1}"
-    alone = model(case.late, "alone").round_trip(case.when, **case.inputs).worksheet()
+    alone = model(case.late, "alone").round_trip(case.when, **case.inputs)
     _tabulate(case)
-    dense = model(case.late, "tables").round_trip(_dense(case.when), **case.inputs).worksheet()
+    dense = model(case.late, "tables").round_trip(_dense(case.when), **case.inputs)
     plain = _plain(case)
     with mpmath.workdps(50):
         exact = twin.seconds
@@ -107,11 +107,11 @@ def examine(case: Case) -> Result:
 
         return Result(
             kind=case.kind,
-            alone=off(alone["answer_s"][0]),
-            tables=off(dense["answer_s"][0]),
-            alone_pair=off(alone["answer_s"][0], alone["answer_low_s"][0]),
-            rungs_alone=differences(alone, twin.worksheet(), tagged),
-            rungs_tables=differences(dense, twin.worksheet(), tagged),
+            alone=off(alone.seconds),
+            tables=off(dense.seconds[0]),
+            alone_pair=off(alone.seconds, alone.seconds_low),
+            rungs_alone=differences(alone.worksheet(), twin.worksheet(), tagged),
+            rungs_tables=differences(dense.worksheet(), twin.worksheet(), tagged),
             plain=None if plain is None else off(plain),
             losses={name: s / FEMTOSECOND for name, s in losses(twin).items()},
         )

@@ -147,11 +147,10 @@ def _reflector(out: _Largest, fast: Any, exact: Any, at: int) -> None:
     earth, moon = vector(exact, "t2_earth"), vector(exact, "t2_moon")
     geocentric = [a - b for a, b in zip(moon, earth, strict=True)]
     out.add_vector("Moon from the Earth", fast["t2.moon_geocentric_m"][:, at], geocentric)
-    out.add_vector(
-        "reflector from the Moon, ICRS",
-        fast["t2.icrs_m"][:, at],
-        vector(exact, "t2_reflector_icrs"),
-    )
+    # The twin scales coordinates to TDB before it turns them, the fast path after.
+    icrs = fast["t2.icrs_m"][:, at]
+    icrs = icrs + fast["t2.scale_change"][at] * icrs
+    out.add_vector("reflector from the Moon, ICRS", icrs, vector(exact, "t2_reflector_icrs"))
     for ours, name in zip(fast["t2.libration_rad"][:, at], ("phi", "theta", "psi"), strict=True):
         out.add("libration", mpmath.sin(mpmath.mpf(float(ours)) - exact[f"t2_{name}_rad"]))
 

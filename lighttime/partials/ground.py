@@ -46,7 +46,7 @@ def station_position(block: Block) -> Slopes:
     by_latitude, by_height, tilt = geodetic_slopes(station.xyz_m)
 
     def row(end: StationEnd) -> Array:
-        by_xyz = end.by_itrf(end.by_place)
+        by_xyz = end.by_place
         air = end.slopes.air
         if air is not None:
             up = end.by_itrf(end.slopes.up)

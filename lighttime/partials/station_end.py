@@ -12,10 +12,18 @@ from functools import cached_property
 
 import numpy as np
 
-from lighttime.constants import EARTH_EQUATORIAL_RADIUS, L_C, SPEED_OF_LIGHT
+from lighttime.constants import (
+    ARCSECOND,
+    EARTH_EQUATORIAL_RADIUS,
+    J2000,
+    JULIAN_YEAR,
+    L_C,
+    SPEED_OF_LIGHT,
+)
 from lighttime.earth import rotation, tides
 from lighttime.earth.motion import StationEvent
 from lighttime.earth.station import Station
+from lighttime.partials.geodetic import pole_tide_slopes, turn_of_local_axes
 from lighttime.partials.leg import LegSlopes
 from lighttime.partials.tide import Tide, source
 from lighttime.vectors import Array, column, cross, dot, norm
@@ -99,11 +107,37 @@ class StationEnd:
 
     @cached_property
     def by_place(self) -> Array:
-        """By the nominal position: the tide there changes with it."""
+        """By the coordinates, ITRF axes: tide and loads there change with them."""
         row = self.by_gcrs
-        if self.tide is None:
-            return row
-        return row + self.tide.by_place(row, self.distance)
+        by_itrf = self.by_itrf(row)
+        total = by_itrf + self._by_place_of_loads(by_itrf)
+        if self.tide is not None:
+            total = total + self.by_itrf(self.tide.by_place(row, self.distance))
+        return total
+
+    def _by_place_of_loads(self, row: Array) -> Array:
+        """The same through what moves the ground along local axes, which turn with the place.
+
+        All of this is 1e-8 of the derivative.
+        """
+        event, station = self.event, self.station
+        total = np.zeros_like(row)
+        moved = [
+            self.by_itrf(event.displacement[name])
+            for name in ("ocean_loading", "ocean_pole_tide", "atmosphere_loading")
+            if name in event.displacement
+        ]
+        if moved:
+            turn = turn_of_local_axes(station.xyz_m)
+            total = np.tensordot(turn, cross(np.sum(moved, axis=0), row), axes=1)
+        if "pole_tide" in event.displacement:
+            rung = event.ladder
+            years = ((rung["tt1"] - J2000) + rung["tt2"]) / JULIAN_YEAR
+            pole = rung["xp_rad"] / ARCSECOND, rung["yp_rad"] / ARCSECOND
+            slopes = pole_tide_slopes(station.xyz_m)
+            for each, m in zip(slopes, tides.wobble(*pole, years), strict=True):
+                total = total + m * np.tensordot(each, row, axes=1)
+        return total
 
     @cached_property
     def clock_by_place(self) -> Array:

@@ -21,7 +21,6 @@ extensions = [
     "numpydoc",
     "sphinx.ext.autodoc",
     "sphinx.ext.autosummary",
-    "sphinx.ext.viewcode",
     "command_help",
     "mathml",
     "signatures",

@@ -91,7 +91,8 @@ def test_python_examples(page: Path) -> None:
     runner = doctest.DocTestRunner(Checker(), optionflags=FLAGS, verbose=False)
     names: dict[str, object] = {"__name__": "__main__"}
     told: list[str] = []
-    pieces = [(line, body) for line, body in blocks(page, "python") if ">>>" in body]
+    pieces = list(blocks(page, "python"))
+    assert all(body.startswith(">>>") for _, body in pieces), "an example that is not run"
     for module in re.findall(r"^>>> (?:import|from) (\w+)", "".join(b for _, b in pieces), re.M):
         pytest.importorskip(module)
     for line, body in pieces:

@@ -10,6 +10,7 @@ from pathlib import Path
 import pytest
 
 import lighttime
+from lighttime.cli import COMMANDS
 
 REFERENCE = Path(__file__).parent.parent / "docs" / "reference"
 ON_DEMAND = {"exact"}
@@ -68,6 +69,14 @@ def test_public_methods_have_docstrings(name: str) -> None:
 def test_exported_names_are_in_order() -> None:
     assert sorted(set(lighttime.__all__)) == sorted(lighttime.__all__)
     assert set(lighttime.__all__) <= set(dir(lighttime))
+
+
+def test_help_of_every_command_is_on_its_page() -> None:
+    page = (REFERENCE / "command-line.md").read_text(encoding="utf-8")
+    names = [command.__name__.rpartition(".")[2] for command in COMMANDS]
+    shown = re.findall(r"^```\{command-help\} (\w+)$", page, re.M)
+    assert sorted(shown) == sorted(names)
+    assert [name for name in names if f"## lighttime {name}\n" not in page] == []
 
 
 def test_names_of_terms_have_an_entry() -> None:

@@ -212,7 +212,8 @@ class EphemerisSigmas(NamedTuple):
     along_m: float
     across_m: float
     libration_rad: float
-    source: str
+    orbit_source: str
+    libration_source: str
 
 
 def ephemeris_sigmas(name: str, given: Uncertainties) -> EphemerisSigmas:
@@ -233,10 +234,11 @@ def ephemeris_sigmas(name: str, given: Uncertainties) -> EphemerisSigmas:
         "across_m": given.moon_across_m,
         "libration_rad": given.libration_rad,
     }
-    supplied = {key: value for key, value in own.items() if value is not None}
-    if len(supplied) == len(own):
-        source = "supplied"
-    elif supplied:
-        source = f"partly supplied, else {source}"
-    values = {key: float(rows[key][known]) for key in own} | supplied
-    return EphemerisSigmas(**values, source=source)
+    sigmas = {key: float(rows[key][known]) if v is None else v for key, v in own.items()}
+    *orbit, libration = (value is not None for value in own.values())
+    partly = f"partly supplied, else {source}" if any(orbit) else source
+    return EphemerisSigmas(
+        **sigmas,
+        orbit_source="supplied" if all(orbit) else partly,
+        libration_source="supplied" if libration else source,
+    )

@@ -163,12 +163,15 @@ def test_coordinates_hide_the_permanent_tide(answer: lt.RoundTrip) -> None:
 
 def test_ephemeris_figures() -> None:
     given = lt.Uncertainties()
-    assert ephemeris_sigmas("DE421", given).source == "order of magnitude, from memory"
+    assert ephemeris_sigmas("DE421", given).orbit_source == "order of magnitude, from memory"
     assert ephemeris_sigmas("DE440s", given).radial_m == 0.02
-    assert "no figures for INPOP" in ephemeris_sigmas("INPOP", given).source
+    assert "no figures for INPOP" in ephemeris_sigmas("INPOP", given).libration_source
     mine = lt.Uncertainties(moon_radial_m=0.01)
     assert ephemeris_sigmas("DE421", mine).radial_m == 0.01
-    assert ephemeris_sigmas("DE421", mine).source.startswith("partly supplied")
+    assert ephemeris_sigmas("DE421", mine).orbit_source.startswith("partly supplied")
+    assert ephemeris_sigmas("DE421", lt.Uncertainties(libration_rad=0.0)).libration_source == (
+        "supplied"
+    )
 
 
 # -- how they add up -----------------------------------------------------------------------------

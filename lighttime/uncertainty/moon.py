@@ -47,13 +47,13 @@ def _ephemeris(case: Case, reflector: Reflector) -> Iterator[Contribution]:
         sizes = (sigma.radial_m, sigma.along_m, sigma.across_m)
         axes = zip(sizes, orbit_axes(answer), strict=True)
         rows = np.stack([size * np.sum(by_moon * axis, axis=0) for size, axis in axes])
-        yield Contribution("moon_orbit", "geometry", rows, sigma.source)
+        yield Contribution("moon_orbit", "geometry", rows, sigma.orbit_source)
     angles = [f"libration_{angle}_rad" for angle in ("phi", "theta", "psi")]
     if case.whole(angles, "libration"):
         # turned about an axis e, the reflector goes from r to r + e x r
         moved = np.stack([np.cross(axis, reflector.xyz_m) for axis in np.eye(3)])
         rows = sigma.libration_rad * moved @ case.three("reflector_{}_m")
-        yield Contribution("libration", "geometry", rows, sigma.source)
+        yield Contribution("libration", "geometry", rows, sigma.libration_source)
 
 
 def orbit_axes(answer: RoundTrip) -> tuple[Array, Array, Array]:

@@ -16,7 +16,6 @@ from lighttime.crosscheck import crosscheck
 from lighttime.earth.loading import AtmosphereLoading, OceanLoading, OceanPoleTide
 from lighttime.earth.residual_motion import ResidualMotion
 from lighttime.earth.series import EarthOrientation
-from lighttime.earth.sinex import read_sinex
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
 from lighttime.errors import (
@@ -30,7 +29,6 @@ from lighttime.errors import (
 )
 from lighttime.model import Model
 from lighttime.moon.reflector import Reflector, reflector, reflectors
-from lighttime.partials import Parameter, Partials
 from lighttime.path.ends import Trajectory
 from lighttime.path.troposphere import Weather
 from lighttime.sigmas import Covariance, Uncertainties
@@ -41,6 +39,8 @@ from lighttime.version import __version__
 
 if TYPE_CHECKING:
     from lighttime import exact as exact
+    from lighttime.earth.sinex import read_sinex
+    from lighttime.partials import Parameter, Partials
 
 __all__ = [
     "TERMS",
@@ -96,15 +96,23 @@ def _default_model() -> Model:
     return Model()
 
 
-_ON_DEMAND = ("exact",)
+_ROOMS_ON_DEMAND = ("exact",)
+_NAMES_ON_DEMAND = {
+    "Parameter": "lighttime.partials",
+    "Partials": "lighttime.partials",
+    "read_sinex": "lighttime.earth.sinex",
+}
+"""What most programs do not need, and what brings other libraries with it."""
 
 
 def __getattr__(name: str) -> Any:
-    """Rooms that bring other libraries with them are imported when they are first asked for."""
-    if name in _ON_DEMAND:
+    """Import what is on demand when it is first asked for."""
+    if name in _ROOMS_ON_DEMAND:
         return import_module(f"lighttime.{name}")
+    if name in _NAMES_ON_DEMAND:
+        return getattr(import_module(_NAMES_ON_DEMAND[name]), name)
     raise AttributeError(f"module 'lighttime' has no attribute {name!r}")
 
 
 def __dir__() -> list[str]:
-    return sorted([*__all__, *_ON_DEMAND])
+    return sorted([*__all__, *_ROOMS_ON_DEMAND])

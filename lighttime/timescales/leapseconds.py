@@ -22,7 +22,7 @@ from datetime import date
 from fractions import Fraction
 from functools import cache
 from importlib.resources import files
-from typing import Final
+from typing import Any, Final
 
 import erfa
 import numpy as np
@@ -92,7 +92,7 @@ def utc_table() -> UtcTable:
     early = table("utc_1960_1971")
     late = _leap_seconds()
 
-    def joined(before: NDArray[np.float64], after: NDArray[np.float64], unit: float) -> Whole:
+    def joined(before: NDArray[Any], after: NDArray[Any], unit: float) -> Whole:
         whole: Whole = np.rint(np.concatenate([before, after]) * unit).astype(np.int64)
         whole.flags.writeable = False
         return whole

@@ -159,6 +159,13 @@ def test_every_parameter_that_has_its_inputs(slopes: dict[str, lt.Partials]) -> 
         assert np.all(np.isfinite(values))
 
 
+def test_the_documentation_tells_of_every_parameter() -> None:
+    page = (Path(__file__).parents[1] / "docs" / "reference" / "partials.md").read_text("utf-8")
+    for name in PARAMETERS:
+        told = name.replace("vy_", "vx_").replace("vz_", "vx_")  # "..." stands for y and z
+        assert f"`{told}`" in page, name
+
+
 def test_timer(slopes: dict[str, lt.Partials]) -> None:
     seconds, _ = ranges("transmit")
     np.testing.assert_array_equal(slopes["transmit"]["clock_rate"], seconds)

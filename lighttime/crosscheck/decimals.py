@@ -18,7 +18,6 @@ from numpy.typing import NDArray
 from lighttime.timescales import twopart
 from lighttime.vectors import Array
 
-
 SMALLEST = 1000
 """So many decimals are taken."""
 

@@ -118,8 +118,9 @@ def roundings(last_digit_s: float, ps_per_us: float) -> tuple[Rounding, ...]:
     -----
     A grid of spacing g makes a noise of g / sqrt(12). Barycentric coordinates (1.5e11 m) are a
     grid of 2^-15 m; three sums on the way to a distance, two ends and two legs make 0.05 to 0.2
-    ps. A day fraction in [1/4, 1) is a grid of 5 or 10 ps in each of three instants. A Julian
-    date in one number is a grid of 40 us.
+    ps. A day fraction in [1/4, 1) is a grid of 5 or 10 ps in each of three instants. Days since
+    the start of an ephemeris, 40 000, are a grid of 0.6 us, in which the Earth moves by 19 mm at
+    each of three events. A Julian date in one number is a grid of 40 us.
     """
     grid = 1.0 / sqrt(12.0)
     digit = 1e12 * last_digit_s * grid
@@ -128,6 +129,12 @@ def roundings(last_digit_s: float, ps_per_us: float) -> tuple[Rounding, ...]:
         Rounding("the last digit of the ranges as given", 0.7 * digit, 1.4 * digit),
         Rounding("barycentric coordinates in one float64 (a grid of 0.03 mm)", 0.03, 0.3),
         Rounding("instants held as a day fraction in one float64 (a grid of 5 to 10 ps)", 0.7, 8.0),
+        Rounding(
+            "records of the ephemeris found by days since its start in one float64 (a grid of "
+            "0.6 us)",
+            8.0,
+            60.0,
+        ),
         Rounding(
             "an epoch held as a Julian date in one float64 (a grid of 40 us)",
             0.5 * date_ps,

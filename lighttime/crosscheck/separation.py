@@ -166,9 +166,17 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
     suspects = [inquiry.suspects[inquiry.columns[c]] for c in columns]
     plans = _plans(setting.bench, suspects, setting.applied)
     sigma = setting.unit_ps * best.noise
+    # what the findings predict and the rival's exact amplitudes do not; its free ones are refitted
     weights = np.zeros(len(columns))
-    weights[[columns.index(c) for c in best.support]] = best.amplitudes
-    loose = [columns.index(c) for c in rival.support]
+    for hypothesis, sign in ((best, 1.0), (rival, -1.0)):
+        for c, amplitude, exact in zip(
+            hypothesis.support, hypothesis.amplitudes, hypothesis.exact, strict=True
+        ):
+            if sign > 0.0 or exact is not None:
+                weights[columns.index(c)] += sign * amplitude
+    loose = [
+        columns.index(c) for c, e in zip(rival.support, rival.exact, strict=True) if e is None
+    ]
     old = inquiry.trial.evidence.signatures[:, columns] / best.noise
     told = []
     for what, rows in _kinds(setting, plans):
@@ -186,9 +194,10 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
         return ()
     if not enough:
         apart, what = told[0]
+        needed = MORE * (APART_SIGMA / max(apart, 1e-3)) ** 2
         return (
-            f"{MORE} more ranges would not do: {what} bring them {apart:.1f} sigma apart, "
-            f"{MORE * (APART_SIGMA / max(apart, 1e-3)) ** 2:.0f} may",
+            f"no {MORE} ranges would do; the best, {what}, bring them {apart:.1f} sigma apart, and "
+            f"some {float(f'{needed:.1g}'):.0f} would do",
         )
     return tuple(
         f"{MORE} ranges {what} bring them {apart:.0f} sigma apart" for apart, what in enough[:3]

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import csv
 import io
-from collections.abc import Iterable, Mapping
+from array import array
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import partial
 from os import PathLike, fspath
@@ -87,7 +88,7 @@ def open_table(source: Any) -> RawTable:
     if isinstance(source, io.TextIOBase) or hasattr(source, "readline"):
         return _read(source, str(getattr(source, "name", "table")))
     if isinstance(source, Mapping):
-        return _columns(type(source).__name__, {str(k): source[k] for k in source})
+        return _columns("a table in memory", {str(k): source[k] for k in source})
     names = getattr(source, "colnames", None)
     if names is None:
         names = getattr(source, "columns", None)
@@ -102,7 +103,7 @@ def open_table(source: Any) -> RawTable:
         columns[str(name)] = getattr(column, "value", column) if hasattr(column, "to") and hasattr(
             column, "unit"
         ) else column  # fmt: skip
-    return _columns(type(source).__name__, columns, units)
+    return _columns(f"a {type(source).__name__}", columns, units)
 
 
 def _columns(
@@ -153,53 +154,51 @@ def _array(name: str, values: Any) -> Any:
 
 def _read(file: TextIO, name: str) -> RawTable:
     comments: list[str] = []
+    numbered = _lines(file, name, comments)
+    first, text = next(numbered, (0, ""))
+    if not text:
+        raise FileError(name, None, "empty: no line names the columns")
+    header = _ecsv_header(comments, name)
+    delimiter = header.get("delimiter") or _delimiter(text)
+    head = [cell.strip() for cell in _cells(text, delimiter)]
+    repeated = sorted({c for c in head if head.count(c) > 1})
+    if repeated:
+        raise FileError(name, first, f"more than one column is called {repeated[0]!r}")
+    if _is_number(head[0]) or head[0][:4].isdigit():
+        raise FileError(name, first, f"{head[0]!r} stands where columns are to be named")
+    columns: dict[str, list[str]] = {column: [] for column in head}
+    lines, wrong = array("q"), {}
+    for number, text in numbered:
+        cells = _cells(text, delimiter)
+        if len(cells) != len(head):
+            wrong[len(lines)] = f"{len(cells)} cells where {len(head)} columns are named"
+            cells = [""] * len(head)
+        for column, cell in zip(columns.values(), cells, strict=True):
+            column.append(cell)
+        lines.append(number)
+        if len(lines) > MOST_ROWS:
+            raise FileError(name, number, f"more rows than {too_many()}")
+        if len(lines) * len(head) > MOST_CELLS:
+            raise FileError(name, number, f"more than {MOST_CELLS} cells, in {len(head)} columns")
+    return RawTable(name, columns, np.array(lines, dtype=int), "line", header["units"], wrong)
+
+
+def _lines(file: TextIO, name: str, comments: list[str]) -> Iterator[tuple[int, str]]:
+    """Numbered lines that are neither blank nor comments; those of an ECSV header are collected."""
     size = 0
-    numbered: list[tuple[int, str]] = []
     for number, line in enumerate(iter(partial(file.readline, LONGEST_LINE + 1), ""), start=1):
         if len(line) > LONGEST_LINE:
             raise FileError(name, number, f"a line of more than {LONGEST_LINE} characters")
         text = line.rstrip("\r\n")
         if text.lstrip().startswith("#"):
-            if not comments or comments[0].startswith("%ECSV"):  # others are passed over
+            if not comments or comments[0].startswith("%ECSV"):
                 comments.append(text.lstrip().removeprefix("#").removeprefix(" "))
                 size += len(text)
             if size > LONGEST_HEADER:
                 reason = f"an ECSV header of more than {LONGEST_HEADER} characters"
                 raise FileError(name, number, reason)
         elif text.strip():
-            numbered.append((number, text))
-            if len(numbered) > MOST_ROWS + 1:
-                raise FileError(name, number, f"more rows than {too_many()}")
-    if not numbered:
-        raise FileError(name, None, "empty: no line names the columns")
-    header = _ecsv_header(comments, name)
-    delimiter = header.get("delimiter") or _delimiter(numbered[0][1])
-    head = [cell.strip() for cell in _cells(numbered[0][1], delimiter)]
-    repeated = sorted({c for c in head if head.count(c) > 1})
-    if repeated:
-        raise FileError(name, numbered[0][0], f"more than one column is called {repeated[0]!r}")
-    if _is_number(head[0]) or head[0][:4].isdigit():
-        raise FileError(name, numbered[0][0], f"{head[0]!r} stands where columns are to be named")
-    if len(head) * len(numbered) > MOST_CELLS:
-        reason = f"{len(head)} columns of {len(numbered)} rows; allowed: {MOST_CELLS} cells"
-        raise FileError(name, None, reason)
-    rows, lines, wrong = _rows(numbered[1:], delimiter, len(head))
-    columns = {column: [row[k] for row in rows] for k, column in enumerate(head)}
-    return RawTable(name, columns, np.array(lines, dtype=int), "line", header["units"], wrong)
-
-
-def _rows(
-    numbered: Iterable[tuple[int, str]], delimiter: str, width: int
-) -> tuple[list[list[str]], list[int], dict[int, str]]:
-    rows, lines, wrong = [], [], {}
-    for number, text in numbered:
-        cells = _cells(text, delimiter)
-        if len(cells) != width:
-            wrong[len(rows)] = f"{len(cells)} cells where {width} columns are named"
-            cells = [""] * width
-        rows.append(cells)
-        lines.append(number)
-    return rows, lines, wrong
+            yield number, text
 
 
 def _cells(text: str, delimiter: str) -> list[str]:

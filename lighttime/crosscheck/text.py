@@ -43,8 +43,8 @@ def summary(report: Report) -> str:
     first = next((r for r in report.rungs if r.departs), None)
     if first is not None:
         sentences.append(f"The first rung that departs is {first.name}.")
-    for finding in report.findings:
-        sentences.append(f"Found: {told(finding)}.")
+    if report.findings:
+        sentences.append(f"Found: {'; '.join(told(f) for f in report.findings)}.")
     sentences.append(_rest_sentence(report))
     if report.tolerance_ps is not None:
         verdict = "agree" if report.agrees else "do not agree"

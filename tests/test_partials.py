@@ -339,6 +339,8 @@ def test_a_trajectory_has_the_parameters_of_the_other_end() -> None:
     s = answer.partials()
     assert "station_x_m" in s
     assert "reflector_x_m" not in s
+    with pytest.raises(lt.InputError, match="it needs a Station and a Reflector"):
+        answer.partials(["earth_vx_m_per_s"])
     ends = [MODEL.round_trip(WHEN.shift(h), STATION, Probe()).seconds for h in (0.5, -0.5)]
     np.testing.assert_allclose(s["epoch_s"], ends[0] - ends[1], rtol=1e-6)
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from functools import cache
+from functools import lru_cache
 
 import numpy as np
 
@@ -65,7 +65,7 @@ def turn_of_local_axes(xyz_m: tuple[float, float, float]) -> Array:
     return turn
 
 
-@cache
+@lru_cache(maxsize=64)
 def pole_tide_slopes(xyz_m: tuple[float, float, float]) -> tuple[Array, Array]:
     """How the pole tide changes with the place, per arcsecond of the wobbles m1 and m2.
 

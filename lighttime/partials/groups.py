@@ -65,7 +65,7 @@ GROUPS = (
     ),
     Group(_three("moon_{}_m"), moon.moon_position, "a Reflector"),
     Group(("h2_moon", "l2_moon"), moon.moon_tide, "a Reflector"),
-    Group(_three("earth_v{}_m_per_s"), path.earth_velocity),
+    Group(_three("earth_v{}_m_per_s"), path.earth_velocity, "a Station and a Reflector"),
     Group(("epoch_s",), path.epoch),
     Group(("gamma",), path.gamma),
     Group(("gm_sun_relative", "gm_earth_relative"), path.masses),
@@ -85,6 +85,8 @@ def given(query: Query) -> frozenset[str]:
             has.add("Station.ocean_loading")
     if isinstance(query.reflector, Reflector):
         has.add("a Reflector")
+    if {"a Station", "a Reflector"} <= has:
+        has.add("a Station and a Reflector")
     if query.weather is not None:
         has.add("weather")
     return frozenset(has)

@@ -138,8 +138,6 @@ class RoundTrip(Answer):
     seconds_low : float or array
         ``seconds + seconds_low`` is the answer as an unevaluated sum of two float64.
     uplink, downlink : LegAnswer
-    response_up, response_down : float or array
-        What a second more on one leg adds to the round trip; close to 1.
     """
 
     seconds_low: Any

@@ -118,6 +118,16 @@ def test_one_instant_gives_python_numbers_that_json_takes() -> None:
     assert told["seconds"] == answer.seconds
 
 
+def test_scalars_of_numpy_stay_scalars() -> None:
+    when = lt.Epoch(np.float64(2461012.5), np.array(0.25), "utc")
+    assert type(when.jd1) is float
+    weather = lt.Weather(np.float64(770.0), np.array(272.0), np.float32(0.5))
+    answer = lt.round_trip(when, STATION, ARRAY, weather=None)
+    assert type(weather.relative_humidity) is type(answer.seconds) is float
+    assert all(type(value) is float for value in answer.terms.values())
+    assert type(lt.round_trip(STAMPS[0], STATION, ARRAY).seconds) is float
+
+
 def test_table_carries_units_and_becomes_a_data_frame() -> None:
     table = lt.round_trip(TEXT, STATION, ARRAY).table()
     assert table["light_time"].unit == units.s

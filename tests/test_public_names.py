@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 import inspect
 import re
 from collections import Counter
@@ -64,6 +65,31 @@ def test_public_methods_have_docstrings(name: str) -> None:
             inspect.isfunction(function) or isinstance(value, property)
         ):
             assert inspect.getdoc(value), f"{name}.{member}"
+
+
+def sections(doc: str, name: str) -> list[str]:
+    """Names that a section of a numpydoc docstring describes."""
+    found = re.search(rf"^{name}\n-+\n(.*?)(?=^\S[^\n]*\n-+$|\Z)", doc, re.M | re.S)
+    heads = re.findall(r"^(\w[\w, ]*?)(?: :.*)?$", found[1], re.M) if found else []
+    return [name.strip() for head in heads for name in head.split(",")]
+
+
+@pytest.mark.parametrize("name", sorted(lighttime.__all__))
+def test_documented_attributes_and_parameters_exist(name: str) -> None:
+    thing = getattr(lighttime, name)
+    if not dataclasses.is_dataclass(thing):
+        return
+    doc = inspect.getdoc(thing) or ""
+    fields = {field.name for field in dataclasses.fields(thing)}
+    assert set(sections(doc, "Parameters")) <= fields
+    for attribute in sections(doc, "Attributes"):
+        assert attribute in fields or hasattr(thing, attribute), attribute
+
+
+def test_sections_are_found() -> None:
+    doc = inspect.getdoc(lighttime.Station) or ""
+    assert {"name", "xyz_m", "residual_motion", "source"} <= set(sections(doc, "Parameters"))
+    assert "downlink" in sections(inspect.getdoc(lighttime.RoundTrip) or "", "Attributes")
 
 
 def test_exported_names_are_in_order() -> None:

@@ -7,6 +7,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from functools import cache
 from importlib import import_module
 from typing import TYPE_CHECKING, Any
@@ -81,14 +82,40 @@ __all__ = [
 ]
 
 
-def round_trip(when: Any, station: Any, reflector: Any, **more: Any) -> RoundTrip:
-    """The round trip by the default model: see `Model.round_trip`."""
-    return _default_model().round_trip(when, station, reflector, **more)
+def round_trip(
+    when: Any,
+    station: Any,
+    reflector: Any,
+    tag: str = "transmit",
+    weather: Weather | None = None,
+    wavelength_nm: float = 532.0,
+    turnaround_s: float = 0.0,
+    progress: Callable[[int, int], None] | None = None,
+) -> RoundTrip:
+    """The round trip by the default model: see `Model.round_trip`.
+
+    Examples
+    --------
+    >>> hilltop = Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0)
+    >>> answer = round_trip("2020-03-01T19:00:00", hilltop, reflectors()[2])
+    >>> f"{answer.seconds:.6f}"
+    '2.606622'
+    """
+    return _default_model().round_trip(
+        when, station, reflector, tag, weather, wavelength_nm, turnaround_s, progress
+    )
 
 
-def one_way(when: Any, start: Any, end: Any, **more: Any) -> OneWay:
+def one_way(
+    when: Any,
+    start: Any,
+    end: Any,
+    tag: str = "transmit",
+    weather: Weather | None = None,
+    wavelength_nm: float = 532.0,
+) -> OneWay:
     """The one-way light time by the default model: see `Model.one_way`."""
-    return _default_model().one_way(when, start, end, **more)
+    return _default_model().one_way(when, start, end, tag, weather, wavelength_nm)
 
 
 @cache

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
@@ -32,7 +32,7 @@ if TYPE_CHECKING:
 c = SPEED_OF_LIGHT
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class LegAnswer:
     """One leg, in the shape of the epochs.
 
@@ -75,8 +75,11 @@ class LegAnswer:
             own,
         )
 
+    def __repr__(self) -> str:
+        return f"<LegAnswer: {_told(self.seconds)} TDB>"
 
-@dataclass(frozen=True, eq=False)
+
+@dataclass(frozen=True, eq=False, repr=False)
 class Answer:
     """What every answer has.
 
@@ -95,7 +98,7 @@ class Answer:
     """
 
     query: Query
-    model: Model = field(repr=False)
+    model: Model
     seconds: Any
     terms: Mapping[str, Any]
     not_modelled: tuple[str, ...]
@@ -104,6 +107,13 @@ class Answer:
     def notes(self) -> tuple[str, ...]:
         """Which data were used, how far they reach, and what does not go together."""
         return notes(self.model, self.query)
+
+    def __repr__(self) -> str:
+        ends = (
+            getattr(end, "name", type(end).__name__)
+            for end in (self.query.station, self.query.reflector)
+        )
+        return f"<{type(self).__name__} {' - '.join(ends)}: {_told(self.seconds)}>"
 
     def _columns(self) -> dict[str, Any]:
         when = self.query.when
@@ -129,7 +139,7 @@ class Answer:
         return out
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class RoundTrip(Answer):
     """A round trip, in seconds of the station's timer.
 
@@ -260,7 +270,7 @@ class RoundTrip(Answer):
         return round_trip_text(self)
 
 
-@dataclass(frozen=True, eq=False)
+@dataclass(frozen=True, eq=False, repr=False)
 class OneWay(Answer):
     """A one-way light time, in TDB seconds.
 
@@ -294,6 +304,15 @@ class OneWay(Answer):
         from lighttime.printing import one_way_text
 
         return one_way_text(self)
+
+
+def _told(seconds: Any) -> str:
+    """One light time, or how many and between which."""
+    if np.ndim(seconds) == 0:
+        return f"{seconds:.12f} s"
+    if not seconds.size:
+        return "no epochs"
+    return f"{seconds.size} epochs, {seconds.min():.6f} to {seconds.max():.6f} s"
 
 
 # -- terms ---------------------------------------------------------------------------------------

@@ -99,13 +99,19 @@ class Model:
             put(self, "ephemeris", Ephemeris.default())
         if self.earth_orientation is None:
             put(self, "earth_orientation", EarthOrientation.bundled())
+        if not isinstance(self.ephemeris, Ephemeris):
+            allowed = "an Ephemeris: Ephemeris.open reads one from files"
+            raise InputError("ephemeris", self.ephemeris, allowed)
+        if not isinstance(self.earth_orientation, EarthOrientation):
+            allowed = "an EarthOrientation: EarthOrientation.read reads one from a file"
+            raise InputError("earth_orientation", self.earth_orientation, allowed)
         put(self, "delays", delay_terms(self.delays))
         put(self, "omit", omitted(self.omit, [term.name for term in self.delays]))
         for name in ("gamma", "moon_h2", "moon_l2"):
-            value = getattr(self, name)
+            value = number(name, getattr(self, name))
             if not np.isfinite(value):
                 raise InputError(name, value, "a finite number")
-            put(self, name, float(value))
+            put(self, name, value)
         if not isinstance(self.uncertainties, Uncertainties):
             raise InputError("uncertainties", self.uncertainties, "an Uncertainties object")
         put(self, "_tables", Tables(self.ephemeris, self._relation))

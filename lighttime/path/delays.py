@@ -5,10 +5,13 @@ from __future__ import annotations
 from typing import Any
 
 import numpy as np
+from numpy.typing import ArrayLike
 
 from lighttime.constants import SPEED_OF_LIGHT
 from lighttime.ephemeris.bodies import PLANETS
 from lighttime.ephemeris.frame import EarthFrame
+from lighttime.errors import InputError
+from lighttime.path.ends import TrajectoryEvent
 from lighttime.path.gravity import in_rest_frame, moving_body, oblateness
 from lighttime.vectors import Array, column, dot, norm
 
@@ -59,6 +62,8 @@ def gravity_delays(
             continue
         position, velocity = _body_at(frame, body, near)
         x1, x2 = near.position - position, far.position - position
+        _check_outside(body, near, x1)
+        _check_outside(body, far, x2, later, velocity)
         bending = solar_bending and body == "sun"
         gm = frame.ephemeris.gm(body)
         delays[body] = moving_body(gm, x1, 0.0, x2, later, velocity, gamma, bending, distance)
@@ -70,6 +75,26 @@ def gravity_delays(
             )
             delays[body] += flattened * (norm(far_at_rest - near_at_rest) / distance)
     return delays
+
+
+INSIDE_M = 1.0e6
+"""Every body that is counted is larger: nearer to its centre the field is another one."""
+
+
+def _check_outside(
+    body: str, event: Any, x: Array, t: ArrayLike = 0.0, velocity: Array | None = None
+) -> None:
+    """Refuse a trajectory that goes through the middle of a body."""
+    if not isinstance(event, TrajectoryEvent):
+        return
+    at_rest = x if velocity is None else in_rest_frame(x, t, velocity)
+    nearest = float(np.min(norm(at_rest), initial=np.inf))
+    if nearest < INSIDE_M:
+        raise InputError(
+            f"distance from the centre of {body}",
+            nearest,
+            f"above {INSIDE_M:g} m, or a Model that omits {GRAVITY_TERMS[body]}",
+        )
 
 
 def _j2_radius2(frame: EarthFrame) -> float:

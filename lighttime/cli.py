@@ -9,13 +9,20 @@ from collections.abc import Sequence
 from typing import Final, NoReturn
 
 import lighttime.commands.coverage as coverage_command
+import lighttime.commands.crosscheck as crosscheck_command
 import lighttime.commands.range as range_command
 import lighttime.commands.scales as scales_command
 import lighttime.commands.station as station_command
 from lighttime.errors import LighttimeError
 from lighttime.version import __version__
 
-COMMANDS: Final = (range_command, scales_command, coverage_command, station_command)
+COMMANDS: Final = (
+    range_command,
+    crosscheck_command,
+    scales_command,
+    coverage_command,
+    station_command,
+)
 """Modules with ``add(subparsers)``, which sets the default ``run``, and ``run(arguments)``."""
 
 REFUSED, INTERRUPTED, BROKEN_PIPE = 2, 130, 141
@@ -35,7 +42,8 @@ def parser() -> Parser:
     top = Parser(
         prog="lighttime",
         description="Light time between stations on the Earth and reflectors on the Moon.",
-        epilog="lighttime COMMAND --help tells more. Exit status: 0, or 2 after an error.",
+        epilog="lighttime COMMAND --help tells more. Exit status: 0, or 2 after an error; "
+        "1 when a cross-check finds that models differ.",
     )
     top.add_argument("--version", action="version", version=f"lighttime {__version__}")
     subparsers = top.add_subparsers(dest="command", metavar="COMMAND", required=True)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
+from dataclasses import dataclass, fields, replace
 from typing import Any
 
 import erfa
@@ -136,28 +136,29 @@ def test_troposphere_where_ours_has_none() -> None:
 # -- the Earth's rotation --------------------------------------------------------------------------
 
 
-class Changed:
+@dataclass(frozen=True, eq=False, repr=False)
+class Changed(lt.EarthOrientation):
     """A series of Earth orientation with something done to its values."""
 
-    def __init__(self, change: Any) -> None:
-        self.series, self.change = BASE.earth_orientation, change
+    change: Any = None
 
     def at(self, tai1: Any, tai2: Any) -> Any:
-        return replace(self.series.at(tai1, tai2), **self.change(self.series, tai1, tai2))
+        return replace(super().at(tai1, tai2), **self.change(SERIES, tai1, tai2))
 
-    def __getattr__(self, name: str) -> Any:
-        return getattr(self.series, name)
+
+SERIES = BASE.earth_orientation
+
+
+def changed_series(change: Any) -> Any:
+    values = {f.name: getattr(SERIES, f.name) for f in fields(SERIES)}
+    return Changed(**values | {"name": "changed"}, change=change)
 
 
 def by_series(change: Any, omit: tuple[str, ...] = ("pole_tide",)) -> tuple[Scene, Any]:
     """A scene without what would follow the changed series, and what the change does."""
     model = replace(BASE, omit=omit)
     scene = replace(SCENE, model=model)
-    return scene, scene.as_if(model=replace(model, earth_orientation=Changed(change)))
-
-
-def _values(series: Any, tai1: Any, tai2: Any) -> Any:
-    return series.at(tai1, tai2)
+    return scene, scene.as_if(model=replace(model, earth_orientation=changed_series(change)))
 
 
 def test_ut1_as_utc() -> None:
@@ -271,7 +272,7 @@ def test_time_of_the_ephemeris() -> None:
 
 def test_delayed_series_turns_the_earth_as_it_should_be() -> None:
     series = BASE.earth_orientation
-    delayed = Delayed(series, 10.0)
+    delayed = Delayed.of(series, 10.0)
     a, b = series.at(2459000.5, 0.3), delayed.at(2459000.5, 0.3 + 10.0 / DAY)
     assert b.ut1_tai_s + 10.0 == pytest.approx(a.ut1_tai_s, abs=1e-14)
     assert delayed.last_dxdy_mjd == series.last_dxdy_mjd
@@ -344,7 +345,9 @@ def test_array_taken_in_local_scale() -> None:
 def test_array_taken_in_mean_earth_axes() -> None:
     theirs = tuple(mean_earth(ARRAY.xyz_m, "DE421").tolist())
     moved = replace(SCENE.query, reflector=replace(ARRAY, xyz_m=theirs))
-    close(effect("array_mean_earth"), SCENE.as_if(query=moved), 0.3)  # of 2 000 000; the rest is troposphere
+    close(
+        effect("array_mean_earth"), SCENE.as_if(query=moved), 0.3
+    )  # of 2 000 000; the rest is troposphere
 
 
 @pytest.mark.parametrize("name", [n for n, s in ALL.items() if s.choice is not None])

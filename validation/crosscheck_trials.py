@@ -166,7 +166,7 @@ def trials(
         if inquiry.members:
             sizes.append(group_size(inquiry))
         if not correct:
-            missed.update(true)
+            missed.update(list(true))
             if verbose:
                 told = {s.name: float(a) for s, a in zip(
                     inquiry.members, inquiry.best.amplitudes, strict=True)}  # fmt: skip

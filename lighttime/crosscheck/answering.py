@@ -81,6 +81,11 @@ class Answered:
     ps_per_us: float
 
 
+def expected(count: int) -> int:
+    """About how much there is to do for so many rows, in ranges."""
+    return 2 * count + 12 * min(count, MOST_SEARCHED)
+
+
 def answered(question: Question) -> Answered:
     """Search; set aside what stands apart; search again."""
     apart = np.zeros(len(question.bench.ranges), dtype=bool)

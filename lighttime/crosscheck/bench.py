@@ -25,7 +25,35 @@ from lighttime.vectors import Array, dot, norm
 BLOCK = 4096
 """Ranges solved together with all that suspects need."""
 
+SUSPECTS_AS_ONE_RANGE = 10
+"""So many suspects take about the time of one range."""
+
 Progress = Callable[[int, int], None]
+
+
+class Meter:
+    """How far a cross-check is, in ranges solved or what takes as long.
+
+    Parameters
+    ----------
+    progress : callable or None
+        Called with (done, in all).
+    """
+
+    def __init__(self, progress: Progress | None = None) -> None:
+        self.progress = progress
+        self.done, self.total = 0, 1
+
+    def expect(self, more: int) -> None:
+        """So much is still to come."""
+        self.total = self.done + max(more, 1)
+
+    def advance(self, ranges: int) -> None:
+        """So much has been done."""
+        self.done += ranges
+        if self.progress is not None:
+            self.total = max(self.total, self.done)
+            self.progress(self.done, self.total)
 
 
 @dataclass(frozen=True, eq=False)
@@ -89,6 +117,7 @@ class Bench:
     tag: str = "transmit"
     wavelength_nm: float = 532.0
     variants: dict[Any, dict[Any, Model]] = field(default_factory=dict, repr=False)
+    meter: Meter = field(default_factory=Meter, repr=False)
 
     # -- groups and scenes -------------------------------------------------------------------
 
@@ -145,7 +174,7 @@ class Bench:
         return Weather(**{name: values[rows] for name, values in given.items()}) if given else None
 
     def scenes(
-        self, rows: Any = None, applied: Sequence[Suspect] = (), progress: Progress | None = None
+        self, rows: Any = None, applied: Sequence[Suspect] = ()
     ) -> Iterator[tuple[Any, Scene]]:
         """Blocks of rows with what suspects are shown.
 
@@ -156,15 +185,10 @@ class Bench:
         applied : sequence of Suspect
             Choices of the other program that are made here, too, one after another.
         """
-        groups = self.groups(rows)
-        total, done = sum(len(g.rows) for g in groups), 0
-        for group in groups:
+        for group in self.groups(rows):
             for first in range(0, len(group.rows), BLOCK):
                 some = group.rows[first : first + BLOCK]
                 yield some, self.scene(group, some, applied)
-                done += len(some)
-                if progress is not None:
-                    progress(done, total)
 
     def scene(self, group: Group, rows: Any, applied: Sequence[Suspect] = ()) -> Scene:
         """One block, after the choices that are applied."""
@@ -215,17 +239,18 @@ class Bench:
                 )
         return wrong
 
-    def base(self, applied: Sequence[Suspect] = (), progress: Progress | None = None) -> Base:
+    def base(self, applied: Sequence[Suspect] = ()) -> Base:
         """Our ranges, the other's minus ours, and the circumstances."""
         count, ranges = len(self.ranges), self.ranges
         difference, ours, elevation, hours, phase = (np.empty(count) for _ in range(5))
-        for rows, scene in self.scenes(None, applied, progress):
+        for rows, scene in self.scenes(None, applied):
             high, low = scene.seconds
             difference[rows] = PS * ((ranges.high_s[rows] - high) + (ranges.low_s[rows] - low))
             ours[rows] = high
             elevation[rows] = np.arcsin(scene.sines[0]) / DEGREE
             hours[rows] = hour_angle_h(scene)
             phase[rows] = phase_deg(scene)
+            self.meter.advance(len(rows))
         return Base(difference, ours, Circumstances(elevation, hours, phase))
 
     def signatures(
@@ -233,7 +258,6 @@ class Bench:
         rows: Any,
         suspects: Sequence[Suspect],
         applied: Sequence[Suspect] = (),
-        progress: Progress | None = None,
     ) -> tuple[Array, Array, dict[str, str]]:
         """What every suspect does to some rows.
 
@@ -250,7 +274,7 @@ class Bench:
         table = np.zeros((len(rows), len(suspects)))
         difference = np.empty(len(rows))
         untested: dict[str, str] = {}
-        for some, scene in self.scenes(rows, applied, progress):
+        for some, scene in self.scenes(rows, applied):
             at = [place[int(row)] for row in some]
             high, low = scene.seconds
             ranges = self.ranges
@@ -262,6 +286,7 @@ class Bench:
                     table[at, k] = suspect.effect(scene)
                 except LighttimeError as error:
                     untested[suspect.name] = str(error)
+            self.meter.advance(len(some) * (1 + len(suspects) // SUSPECTS_AS_ONE_RANGE))
         for k, suspect in enumerate(suspects):
             if suspect.name in untested or not np.all(np.isfinite(table[:, k])):
                 table[:, k] = 0.0

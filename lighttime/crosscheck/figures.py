@@ -44,7 +44,8 @@ def kinds(report: Report) -> tuple[list[str], Any]:
     else:
         plain = ["".join(c for c in n.lower() if c.isalnum()) for n in names]
         theirs = [
-            "".join(c for c in str(n).lower() if c.isalnum()) for n in np.unique(report.ranges.array)
+            "".join(c for c in str(n).lower() if c.isalnum())
+            for n in np.unique(report.ranges.array)
         ]
         place = {n: plain.index(n) if n in plain else 0 for n in theirs}
         given = [

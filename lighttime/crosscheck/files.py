@@ -21,21 +21,30 @@ FORMS = (".html", ".json", ".ecsv")
 
 def write(report: Report, path: str | PathLike[str]) -> None:
     """See `Report.write`."""
-    form = Path(fspath(path)).suffix.lower()
-    if form not in FORMS:
-        raise InputError("path", fspath(path), f"a name that ends in {', '.join(FORMS)}")
-    if form == ".html":
-        from lighttime.crosscheck.page import page
-
-        text = page(report)
-    elif form == ".json":
-        text = json.dumps(report_json(report), indent=2, allow_nan=False) + "\n"
-    else:
-        text = _ecsv(report)
+    text = rendered(report, form_of(path))
     try:
         Path(fspath(path)).write_text(text, encoding="utf-8")
     except OSError as error:
         raise FileError(fspath(path), None, f"cannot be written: {error.strerror}") from None
+
+
+def form_of(path: str | PathLike[str]) -> str:
+    """The form that the ending of a name says; InputError for another."""
+    form = Path(fspath(path)).suffix.lower()
+    if form not in FORMS:
+        raise InputError("path", fspath(path), f"a name that ends in {', '.join(FORMS)}")
+    return form
+
+
+def rendered(report: Report, form: str) -> str:
+    """The report as the text of a file of one of `FORMS`."""
+    if form == ".html":
+        from lighttime.crosscheck.page import page
+
+        return page(report)
+    if form == ".json":
+        return json.dumps(report_json(report), indent=2, allow_nan=False) + "\n"
+    return _ecsv(report)
 
 
 def report_json(report: Report, rows: bool = True) -> dict[str, Any]:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import inf, sqrt
 
 import numpy as np
@@ -148,6 +148,7 @@ def inquire(
         [tuple(suspects[i].readings) for i in columns],
         np.array([suspects[i].plausible for i in columns]),
         max(len(suspects), 1),
+        [suspects[i].block for i in columns],
     )
     most = min(most, (evidence.rows - 2) // ROWS_PER_FINDING, len(columns))
     best = trial.weigh(())
@@ -162,8 +163,8 @@ def inquire(
             break
         worst = max(doubtful, key=lambda k: judged[k][2])
         rest = tuple(c for k, c in enumerate(best.support) if k != worst)
-        trial = Trial(trial.evidence, trial.readings, trial.plausible, trial.tried)
-        best = improved(trial, trial.weigh(rest), len(rest))
+        trial = replace(trial)  # which forgets what was weighed
+        best = improved(trial, trial.weigh(rest), len(trial.units(rest)))
     own = [h for h in near if h.support != best.support and len(h.support) <= len(best.support)]
     return Inquiry(
         tuple(suspects), columns, trial, best,

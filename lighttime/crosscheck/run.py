@@ -2,16 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
 
 from lighttime.constants import J2000, JULIAN_YEAR
-from lighttime.crosscheck.answering import Question, answered
+from lighttime.crosscheck.answering import Question, answered, expected
 from lighttime.crosscheck.assembly import assembled
-from lighttime.crosscheck.bench import Base, Bench, by_name
+from lighttime.crosscheck.bench import Base, Bench, Meter, Progress, by_name
 from lighttime.crosscheck.gross import misread
 from lighttime.crosscheck.noise import OURS_PS
 from lighttime.crosscheck.ranges import Defaults, Ranges, read_ranges
@@ -24,8 +24,6 @@ from lighttime.model import TAGS, Model
 from lighttime.moon.reflector import Reflector
 from lighttime.path.weather import Weather
 from lighttime.vectors import Array
-
-Progress = Callable[[int, int], None]
 
 
 @dataclass(frozen=True, eq=False)
@@ -72,7 +70,9 @@ def run(
 ) -> Report:
     """See `lighttime.crosscheck`."""
     bench = _bench(ranges, station, reflector, model, columns, settings)
-    bench, base = _compared(bench, settings.skip_unreadable, progress)
+    bench = replace(bench, meter=Meter(progress))
+    bench.meter.expect(expected(len(bench.ranges)))
+    bench, base = _compared(bench, settings.skip_unreadable)
     places = bench.groups()
     suspects = all_suspects(
         bench.model,
@@ -108,14 +108,14 @@ def _bench(
     )
 
 
-def _compared(bench: Bench, skip: bool, progress: Progress | None) -> tuple[Bench, Base]:
+def _compared(bench: Bench, skip: bool) -> tuple[Bench, Base]:
     """Ours beside theirs, without rows that are of no use."""
     bench = bench.less(bench.not_covered(), skip)
     try:
-        base = bench.base(progress=progress)
+        base = bench.base()
     except HorizonError:
         bench = bench.less(bench.too_low(), skip)
-        base = bench.base(progress=progress)
+        base = bench.base()
     wrong = misread(bench.ranges.high_s, base.ours_s)
     if wrong:
         bench = bench.less(wrong, skip)

@@ -8,7 +8,7 @@ from math import inf
 import numpy as np
 
 from lighttime.crosscheck import MOST
-from lighttime.crosscheck.selection import HOPELESS, Exact, Hypothesis, Support, Trial
+from lighttime.crosscheck.selection import HOPELESS, SAME, Exact, Hypothesis, Support, Trial
 from lighttime.vectors import Array
 
 BEAM = 8
@@ -22,6 +22,9 @@ EXCHANGES = 12
 
 PAIRS = 12
 """Pairs looked at from the start."""
+
+BLOCKS = 3
+"""Blocks of offsets tried next on each."""
 
 CLOSE = 0.01
 """Part of an exact amplitude within which a free one is worth a look as an exact one."""
@@ -45,7 +48,7 @@ def search(trial: Trial, most: int = MOST) -> Hypothesis:
     best = trial.weigh(())
     followed = [best]
     for size in range(1, most + 1):
-        supports = grown(trial, followed, BRANCHES)
+        supports = grown(trial, followed, BRANCHES, most)
         if size == 2:
             supports |= set(promising_pairs(trial, PAIRS))
         if not supports:
@@ -64,11 +67,12 @@ def search(trial: Trial, most: int = MOST) -> Hypothesis:
 def rivals(trial: Trial, best: Hypothesis, within: float) -> list[Hypothesis]:
     """Every other hypothesis whose score is within so much of the best, the best first.
 
-    All exchanges of one finding for another suspect are weighed that could be among them, so the
-    list is complete as to single exchanges. If one is better than the best, it is the first.
+    All exchanges of one finding (or block of findings) for another suspect are weighed that could
+    be among them, so the list is complete as to single exchanges. If one is better than the
+    best, it is the first.
     """
-    for member in best.support:
-        smaller = trial.weigh(tuple(c for c in best.support if c != member))
+    for unit in trial.units(best.support):
+        smaller = trial.weigh(without(best.support, unit))
         columns = promising(trial, smaller, trial.evidence.size, best.noise**2 * within * 2.0)
         trial.weigh_all([tuple(sorted((*smaller.support, column))) for column in columns])
     scored = sorted(trial.hypotheses, key=lambda h: h.score)
@@ -79,24 +83,45 @@ def rivals(trial: Trial, best: Hypothesis, within: float) -> list[Hypothesis]:
 def improved(trial: Trial, best: Hypothesis, most: int = MOST) -> Hypothesis:
     """Exchange, drop and add suspects until nothing makes the hypothesis more probable."""
     while True:
-        smaller = [tuple(c for c in best.support if c != member) for member in best.support]
-        starts = trial.weigh_all(smaller)
-        if len(best.support) < most:
-            starts.append(best)
-        supports = set(smaller) | grown(trial, starts, EXCHANGES)
+        parts = {*trial.units(best.support), *((column,) for column in best.support)}
+        smaller = sorted({without(best.support, part) for part in parts})
+        starts = [*trial.weigh_all(smaller), best]
+        supports = set(smaller) | grown(trial, starts, EXCHANGES, most)
         found = min(trial.weigh_all(sorted(supports)), key=lambda h: h.score, default=best)
         if found.score >= best.score:
             return best
         best = found
 
 
-def grown(trial: Trial, hypotheses: Sequence[Hypothesis], branches: int) -> set[Support]:
-    """Hypotheses with one more of the most promising suspects."""
-    return {
-        tuple(sorted((*h.support, column)))
-        for h in hypotheses
-        for column in promising(trial, h, branches)
-    }
+def without(support: Support, part: Support) -> Support:
+    """The others."""
+    return tuple(column for column in support if column not in part)
+
+
+def grown(trial: Trial, hypotheses: Sequence[Hypothesis], branches: int, most: int) -> set[Support]:
+    """Hypotheses with one more of the most promising suspects, or with a block of offsets."""
+    found = set()
+    for h in hypotheses:
+        more = [(column,) for column in promising(trial, h, branches)]
+        more += promising_blocks(trial, h, BLOCKS)
+        found |= {tuple(sorted((*h.support, *columns))) for columns in more}
+    return {support for support in found if len(trial.units(support)) <= most}
+
+
+def promising_blocks(trial: Trial, hypothesis: Hypothesis, count: int) -> list[Support]:
+    """Blocks of offsets that would explain most of what a hypothesis leaves."""
+    rest, left = _left_by(trial, hypothesis.support, hypothesis.amplitudes, hypothesis.exact)
+    blocks: dict[str, list[int]] = {}
+    for column, block in enumerate(trial.blocks):
+        if block and column not in hypothesis.support:
+            blocks.setdefault(block, []).append(column)
+    gains = []
+    for columns in blocks.values():
+        if len(columns) > 1:
+            q, r = np.linalg.qr(left[:, columns])
+            if len(r) == len(columns) and np.abs(np.diag(r)).min() > SAME:
+                gains.append((float(np.sum((q.T @ rest) ** 2)), tuple(columns)))
+    return [columns for _, columns in sorted(gains, reverse=True)[:count]]
 
 
 def promising(trial: Trial, hypothesis: Hypothesis, count: int, within: float = inf) -> list[int]:
@@ -130,6 +155,23 @@ def _rounded(readings: Sequence[float], amplitude: float) -> float | None:
 def _promising(
     trial: Trial, support: Support, amplitudes: Array, exact: Exact, count: int, within: float
 ) -> list[int]:
+    rest, left = _left_by(trial, support, amplitudes, exact)
+    along = left.T @ rest
+    own = np.maximum(np.sum(left**2, axis=0), 1e-20)
+    free = along**2 / own
+    steps = _steps(trial)
+    as_exact = np.max(2.0 * steps * along[:, None] - steps**2 * own[:, None], axis=1)
+    members = list(support)
+    free[members] = as_exact[members] = -inf
+    order = [*np.argsort(-free)[:count], *np.argsort(-as_exact)[:count]]
+    enough = max(0.0, float(np.max(free, initial=0.0)) - within)
+    return [int(j) for j in dict.fromkeys(order) if free[j] > enough]
+
+
+def _left_by(
+    trial: Trial, support: Support, amplitudes: Array, exact: Exact
+) -> tuple[Array, Array]:
+    """What a hypothesis leaves of the differences, and of the unit signatures of all suspects."""
     members = list(support)
     loose = [c for c, e in zip(support, exact, strict=True) if e is None]
     rest = trial.evidence.differences - trial.evidence.signatures[:, members] @ amplitudes
@@ -138,15 +180,7 @@ def _promising(
         q, _ = np.linalg.qr(left[:, loose])
         left = left - q @ (q.T @ left)
         rest = rest - q @ (q.T @ rest)
-    along = left.T @ rest
-    own = np.maximum(np.sum(left**2, axis=0), 1e-20)
-    free = along**2 / own
-    steps = _steps(trial)
-    as_exact = np.max(2.0 * steps * along[:, None] - steps**2 * own[:, None], axis=1)
-    free[members] = as_exact[members] = -inf
-    order = [*np.argsort(-free)[:count], *np.argsort(-as_exact)[:count]]
-    enough = max(0.0, float(np.max(free, initial=0.0)) - within)
-    return [int(j) for j in dict.fromkeys(order) if free[j] > enough]
+    return rest, left
 
 
 def _steps(trial: Trial) -> Array:

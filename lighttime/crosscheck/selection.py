@@ -24,6 +24,7 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from math import inf, log
+from typing import Any
 
 import numpy as np
 
@@ -41,6 +42,9 @@ HOPELESS = 30.0
 
 SAME = 1e-12
 """Signatures that differ by less of their length are the same for a computer."""
+
+OF_A_BLOCK = 3.0
+"""What a further offset of a block is picked from."""
 
 Support = tuple[int, ...]
 Exact = tuple[float | None, ...]
@@ -105,12 +109,15 @@ class Trial:
         Plausible size of each amplitude.
     tried : int
         Number of suspects, those that were set aside included.
+    blocks : sequence of str
+        Offsets that go together; "" for a suspect on its own.
     """
 
     evidence: Evidence
     readings: Sequence[Sequence[float]]
     plausible: Array
     tried: int
+    blocks: Sequence[str]
 
     @cached_property
     def _known(self) -> dict[Support, Hypothesis]:
@@ -125,6 +132,13 @@ class Trial:
     def unit(self) -> Array:
         """Signatures of unit length."""
         return self.evidence.signatures / self.lengths
+
+    def units(self, support: Support) -> list[Support]:
+        """The members of a hypothesis, those of a block together."""
+        found: dict[Any, list[int]] = {}
+        for column in support:
+            found.setdefault(self.blocks[column] or column, []).append(column)
+        return [tuple(columns) for columns in found.values()]
 
     # -- weighing ----------------------------------------------------------------------------
 
@@ -164,7 +178,7 @@ class Trial:
             return Hypothesis(support, none, none, none, (None,) * k, inf, inf, inf)
         noise2 = self._noise2(fit.squares, k)
         sigmas = fit.sigmas * noise2**0.5
-        bound = self.misfit(fit.squares) + 2.0 * k * log(self.tried)
+        bound = self.misfit(fit.squares) + 2.0 * len(self.units(support)) * log(self.tried)
         free = fit.amplitudes
         if bound > best_score + HOPELESS:
             exact = (None,) * k
@@ -215,8 +229,11 @@ class Trial:
         stacked = np.concatenate([fit.triangle * (tau / noise2**0.5), np.eye(len(columns))])
         diagonal = np.linalg.qr(stacked, mode="r").diagonal()
         cost = 2.0 * float(np.sum(np.log(np.abs(diagonal))))
+        seen: set[str] = set()
         for column, size in zip(columns, (fit.amplitudes / tau) ** 2, strict=True):
-            cost += 2.0 * log(self.tried)
+            block = self.blocks[column]
+            cost += 2.0 * log(OF_A_BLOCK if block and block in seen else self.tried)
+            seen.add(block)
             if self.readings[column]:  # a choice is not made fifty times
                 cost += float(size) - 2.0 * log(1.0 - PRIOR_EXACT)
             else:  # an offset may be of any size

@@ -15,9 +15,11 @@ from lighttime.crosscheck.findings import Inquiry
 from lighttime.crosscheck.scene import Scene
 from lighttime.crosscheck.selection import Hypothesis
 from lighttime.crosscheck.suspects import Suspect
+from lighttime.earth.station import Station
 from lighttime.errors import LighttimeError
 from lighttime.moon.reflector import reflectors
 from lighttime.path.weather import Weather
+from lighttime.query import Query
 from lighttime.timescales import Epoch
 from lighttime.vectors import Array
 
@@ -26,6 +28,9 @@ APART_SIGMA = 5.0
 
 MORE = 50
 """Ranges that new data are thought to have."""
+
+MOST_NEEDED = 20_000
+"""More ranges than this are none that anybody takes."""
 
 LOWEST_DEG = 15.0
 
@@ -97,7 +102,10 @@ def inseparable(inquiry: Inquiry, setting: Setting) -> tuple[Inseparable, ...]:
         if ours and theirs:
             groups.setdefault(ours, []).append(rival)
     found = []
-    for ours, rivals in groups.items():
+    alone = {ours[0] for ours in groups if len(ours) == 1}
+    for ours, rivals in sorted(groups.items(), key=lambda item: len(item[0])):
+        if len(ours) > 1 and alone & set(ours):
+            continue  # a member has rivals of its own: that says it
         rivals = rivals[:MOST_RIVALS]
         named = tuple(
             tuple(_name(inquiry, c) for c in r.support if c not in inquiry.best.support)
@@ -150,9 +158,9 @@ def _smallest(inquiry: Inquiry, ours: tuple[int, ...], rival: Hypothesis) -> flo
 
 @dataclass(frozen=True, eq=False)
 class Plan:
-    """Ranges that could be taken: an array, circumstances, and what suspects do to them."""
+    """Ranges that could be taken: in words, circumstances, and what suspects do to them."""
 
-    array: str
+    words: str
     known: bool
     when: Epoch
     circumstances: Circumstances
@@ -174,9 +182,7 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
         ):
             if sign > 0.0 or exact is not None:
                 weights[columns.index(c)] += sign * amplitude
-    loose = [
-        columns.index(c) for c, e in zip(rival.support, rival.exact, strict=True) if e is None
-    ]
+    loose = [columns.index(c) for c, e in zip(rival.support, rival.exact, strict=True) if e is None]
     old = inquiry.trial.evidence.signatures[:, columns] / best.noise
     told = []
     for what, rows in _kinds(setting, plans):
@@ -195,45 +201,66 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
     if not enough:
         apart, what = told[0]
         needed = MORE * (APART_SIGMA / max(apart, 1e-3)) ** 2
+        if needed > MOST_NEEDED:
+            return ("no ranges would: the two do the same to all",)
         return (
-            f"no {MORE} ranges would do; the best, {what}, bring them {apart:.1f} sigma apart, and "
-            f"some {float(f'{needed:.1g}'):.0f} would do",
+            f"no {MORE} ranges would do; the best, {what}, bring the first of these {apart:.1f} sigma "
+            f"away, and some {float(f'{needed:.1g}'):.0f} would do",
         )
     return tuple(
-        f"{MORE} ranges {what} bring them {apart:.0f} sigma apart" for apart, what in enough[:3]
+        f"{MORE} ranges {what} bring the first of these {apart:.0f} sigma away" for apart, what in enough[:3]
     )
 
 
 def _plans(bench: Bench, suspects: Sequence[Suspect], applied: Sequence[Suspect]) -> list[Plan]:
-    """A year of possible ranges to every array, around the middle of the data."""
+    """A year of possible ranges, around the middle of the data.
+
+    To the arrays in the data, to the others, and to one of them from a second station.
+    """
     groups = bench.groups()
     largest = max(groups, key=lambda g: len(g.rows))
+    query = replace(
+        bench.query(largest, largest.rows[:1]), when=_year(bench), weather=_usual_weather(bench)
+    )
     known = {g.array.name: g.array for g in groups}
-    arrays = {a.name: a for a in reflectors()} | known
-    when = _year(bench)
-    weather = _usual_weather(bench)
-    plans = []
-    for name, array in arrays.items():
-        query = replace(
-            bench.query(largest, largest.rows[:1]), when=when, reflector=array, weather=None
-        )
-        try:
-            geometry = Scene(bench.model, query, bench.ranges.quantity)
-            high = np.arcsin(np.minimum(*geometry.sines)) > np.radians(LOWEST_DEG)
-            some = replace(query, when=when[high], weather=weather)
-            scene = Scene(bench.model, some, bench.ranges.quantity)
-            for suspect in applied:
-                assert suspect.choice is not None
-                model, other = suspect.choice(scene)
-                scene = Scene(model, other, bench.ranges.quantity)
-            table = np.stack([s.effect(scene) for s in suspects], axis=1)
-        except LighttimeError:
-            continue
-        seen = Circumstances(
-            np.degrees(np.arcsin(scene.sines[0])), hour_angle_h(scene), phase_deg(scene)
-        )
-        plans.append(Plan(name, name in known, some.when, seen, table))
-    return plans
+    asked = [
+        (f"to {name}", name in known, replace(query, reflector=array))
+        for name, array in ({a.name: a for a in reflectors()} | known).items()
+    ]
+    asked.append(("from a second station", False, replace(query, station=_second(largest.station))))
+    plans = (_plan(bench, *each, suspects, applied) for each in asked)
+    return [plan for plan in plans if plan is not None]
+
+
+def _plan(
+    bench: Bench,
+    words: str,
+    known: bool,
+    query: Query,
+    suspects: Sequence[Suspect],
+    applied: Sequence[Suspect],
+) -> Plan | None:
+    """Those of the instants at which the Moon is high enough; None if our model cannot answer."""
+    quantity = bench.ranges.quantity
+    try:
+        low = Scene(bench.model, replace(query, weather=None), quantity)
+        high = np.arcsin(np.minimum(*low.sines)) > np.radians(LOWEST_DEG)
+        scene = Scene(bench.model, replace(query, when=query.when[high]), quantity)
+        for suspect in applied:
+            assert suspect.choice is not None
+            scene = Scene(*suspect.choice(scene), quantity)
+        table = np.stack([s.effect(scene) for s in suspects], axis=1)
+    except LighttimeError:
+        return None
+    elevation = np.degrees(np.arcsin(scene.sines[0]))
+    seen = Circumstances(elevation, hour_angle_h(scene), phase_deg(scene))
+    return Plan(words, known, scene.query.when, seen, table)
+
+
+def _second(first: Station) -> Station:
+    """A station elsewhere: in the other hemisphere, 70 degrees further east."""
+    latitude, longitude = -0.7 * first.latitude_deg, (first.longitude_deg + 250.0) % 360.0 - 180.0
+    return Station.from_geodetic("a second station", latitude, longitude, 1000.0)
 
 
 def _year(bench: Bench) -> Epoch:
@@ -264,7 +291,7 @@ def _kinds(setting: Setting, plans: Sequence[Plan]) -> list[tuple[str, Any]]:
     known = [p for p in plans if p.known]
     for plan in plans:
         if not plan.known:
-            kinds.append((f"to {plan.array}", plan.signatures))
+            kinds.append((plan.words, plan.signatures))
     if not known:
         return kinds
     signatures = np.concatenate([p.signatures for p in known])

@@ -68,9 +68,7 @@ def figure(axis: Axis, panels: Sequence[Panel], colours: Any, alt: str) -> str:
         for at, label in axis.ticks:
             if low <= at <= high:
                 across = float(_placed(np.array([at]), low, high, LEFT, WIDTH - RIGHT)[0])
-                parts.append(
-                    f'<path class="grid" d="M{across:.1f} {top:.1f}V{bottom + 4:.1f}"/>'
-                )
+                parts.append(f'<path class="grid" d="M{across:.1f} {top:.1f}V{bottom + 4:.1f}"/>')
                 if k == len(panels) - 1:
                     parts.append(_text(across, bottom + 17.0, label, "middle"))
     parts.append(_text(0.5 * (LEFT + WIDTH - RIGHT), height - 4.0, axis.name, "middle"))
@@ -122,4 +120,6 @@ def _placed(values: Array, low: float, high: float, start: float, end: float) ->
 
 
 def _text(x: float, y: float, text: str, anchor: str, kind: str = "label") -> str:
-    return f'<text class="{kind}" x="{x:.1f}" y="{y:.1f}" text-anchor="{anchor}">{escape(text)}</text>'
+    return (
+        f'<text class="{kind}" x="{x:.1f}" y="{y:.1f}" text-anchor="{anchor}">{escape(text)}</text>'
+    )

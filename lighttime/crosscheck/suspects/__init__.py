@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from lighttime.crosscheck.suspects import constants, frame, solution, terms, time
-from lighttime.crosscheck.suspects.offsets import free_offsets
+from lighttime.crosscheck.suspects.offsets import general_offsets
+from lighttime.crosscheck.suspects.places import array_offsets, station_offsets
 from lighttime.crosscheck.suspects.suspect import FAMILIES, Suspect
 from lighttime.earth.station import Station
 from lighttime.ephemeris import Ephemeris
@@ -55,12 +56,9 @@ def all_suspects(
     """
     return (
         *CHOICES,
-        *terms.absent_terms(model),
+        *terms.terms_of(model),
         *(constants.other_ephemeris(each) for each in ephemerides),
-        *free_offsets(
-            [s.name for s in stations],
-            [a.name for a in arrays],
-            [s.name for s in stations if s.ocean_loading is None],
-            middle_year,
-        ),
+        *general_offsets(middle_year),
+        *station_offsets(stations, middle_year),
+        *array_offsets(arrays),
     )

@@ -2,33 +2,28 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from functools import partial
 
 import numpy as np
 
-from lighttime.constants import EARTH_ROTATION_RATE, J2000, MILLIARCSECOND, TURN
-from lighttime.crosscheck.scene import PS, Scene
+from lighttime.constants import EARTH_ROTATION_RATE, MILLIARCSECOND
+from lighttime.crosscheck.scene import PS, Effect, Scene
 from lighttime.crosscheck.suspects.frame import celestial_pole_moved
 from lighttime.crosscheck.suspects.suspect import Suspect
 from lighttime.crosscheck.suspects.terms import lunar_tide_of, years_since_2000
 from lighttime.crosscheck.suspects.time import ephemeris_shifted
-from lighttime.earth.local import east_north_up
 from lighttime.path.delays import GRAVITY_TERMS
-from lighttime.path.troposphere import mapping
 from lighttime.vectors import Array, cross, norm
 
 MM = 1.0e-3
 US = 1.0e-6
-LIBRATION_AXES = ("x", "y", "z")
 
 # -- the measurement -------------------------------------------------------------------------------
 
 
-def bias(scene: Scene, station: str | None = None, array: str | None = None) -> Array:
-    """A picosecond, on all ranges or on those of one station or array."""
-    here = station in (None, scene.station.name) and array in (None, scene.reflector.name)
-    return scene.zero + float(here)
+def bias(scene: Scene) -> Array:
+    """A picosecond on all ranges."""
+    return scene.zero + 1.0
 
 
 def drift(scene: Scene, middle_year: float) -> Array:
@@ -74,46 +69,7 @@ def celestial_pole_offset(scene: Scene, x: float, y: float) -> Array:
     return celestial_pole_moved(scene, x * mas, y * mas)
 
 
-def station_offset(scene: Scene, station: str, axis: int) -> Array:
-    """A millimetre of the station to the east, north or up."""
-    if scene.station.name != station:
-        return scene.zero
-    at1, at3 = scene.itrf(MM * np.asarray(east_north_up(scene.station.xyz_m)[axis]))
-    return scene.moved(at1=at1, at3=at3)
-
-
-def tide_in_height(scene: Scene, station: str, period_h: float, quarter: float) -> Array:
-    """A millimetre of height with the period of a tide, of unknown phase."""
-    if scene.station.name != station:
-        return scene.zero
-    rung = scene.t1.ladder
-    hours = ((rung["tt1"] - J2000) + rung["tt2"]) * 24.0
-    wave = MM * np.cos(TURN * (hours / period_h - quarter))
-    at1, at3 = scene.itrf(east_north_up(scene.station.xyz_m)[2])
-    return scene.moved(at1=wave * at1, at3=wave * at3)
-
-
-def zenith_delay_offset(scene: Scene, station: str) -> Array:
-    """A millimetre of zenith delay."""
-    if scene.station.name != station or not scene.has_troposphere or scene.query.weather is None:
-        return scene.zero
-    place = scene.station
-    temperature = scene.query.weather.temperature_k
-    up, down = (
-        MM * mapping(np.arcsin(s), place.latitude_rad, place.height_m, temperature) / 299792458.0
-        for s in scene.sines
-    )
-    return scene.delayed(up, down)
-
-
 # -- the Moon --------------------------------------------------------------------------------------
-
-
-def array_offset(scene: Scene, array: str, axis: int) -> Array:
-    """A millimetre of the array along a principal axis."""
-    if scene.reflector.name != array:
-        return scene.zero
-    return scene.moved(at2=scene.lunar(MM * np.eye(3)[axis]))
 
 
 def libration_offset(scene: Scene, axis: int) -> Array:
@@ -167,113 +123,81 @@ def gamma(scene: Scene) -> Array:
 # -- the list --------------------------------------------------------------------------------------
 
 
-def _offset(name: str, says: str, look_for: str, effect, unit: str, plausible: float) -> Suspect:  # type: ignore[no-untyped-def]
-    return Suspect(name, "offset", says, look_for, effect, unit=unit, plausible=plausible)
+def offset(
+    name: str,
+    says: str,
+    look_for: str,
+    effect: Effect,
+    size: tuple[float, str],
+    block: str = "",
+) -> Suspect:
+    """A free offset, with a plausible size and its unit."""
+    plausible, unit = size
+    return Suspect(
+        name, "offset", says, look_for, effect, unit=unit, plausible=plausible, block=block
+    )
 
 
-TIDES_H = {"M2": 12.4206012, "S2": 12.0, "K1": 23.9344696, "O1": 25.8193417}
-"""Periods of the main tides, hours. Source: Doodson 1921."""
-
-
-def free_offsets(
-    stations: Sequence[str],
-    arrays: Sequence[str],
-    unloaded: Sequence[str],
-    middle_year: float = 2000.0,
-) -> tuple[Suspect, ...]:
-    """The free offsets of some stations and arrays.
-
-    Parameters
-    ----------
-    stations, arrays : sequence of str
-        Their names.
-    unloaded : sequence of str
-        Stations without coefficients of ocean loading.
-    middle_year : float
-        From where drifts are counted.
-    """
-    found = [
-        _offset("bias", "constant", "a calibration constant; the reference point", bias, "ps", 1e3),
-        _offset("drift", "drift", "a quantity that is not moved in time",
-                partial(drift, middle_year=middle_year), "ps/yr", 100.0),
-        _offset("scale", "scale", "the unit of length or of time", scale, "1e-9", 10.0),
-        _offset("epoch_offset", "offset of the epochs", "the clock, or the tagged instant within "
-                "the pulse", late_epoch, "us", 100.0),
-        _offset("ephemeris_time", "offset of the time of the ephemeris",
-                "TDB-TT, and its constant", late_ephemeris, "us", 1e3),
-        _offset("ut1_offset", "offset of UT1", "the series of UT1", late_ut1, "us", 100.0),
-        _offset("ut1_drift", "drift of UT1", "the series of UT1",
-                partial(ut1_drift, middle_year=middle_year), "us/yr", 10.0),
-        _offset("pole_x_offset", "offset of x_p", "the series of the pole",
-                partial(pole_offset, x=1.0, y=0.0), "mas", 10.0),
-        _offset("pole_y_offset", "offset of y_p", "the series of the pole",
-                partial(pole_offset, x=0.0, y=1.0), "mas", 10.0),
-        _offset("celestial_x_offset", "offset of X of the celestial pole",
-                "the frame of the ephemeris, and dX",
-                partial(celestial_pole_offset, x=1.0, y=0.0), "mas", 1.0),
-        _offset("celestial_y_offset", "offset of Y of the celestial pole",
-                "the frame of the ephemeris, and dY",
-                partial(celestial_pole_offset, x=0.0, y=1.0), "mas", 1.0),
-        *(
-            _offset(f"libration_{axis}", f"the Moon turned about its {axis} axis",
-                    "the libration angles and their axes", partial(libration_offset, axis=k),
-                    "mas", 100.0)
-            for k, axis in enumerate(LIBRATION_AXES)
+def general_offsets(middle_year: float) -> tuple[Suspect, ...]:
+    """Free offsets that all ranges share; drifts are counted from a year."""
+    series, orbit = "the series of Earth orientation", "the ephemeris"
+    return (
+        offset(
+            "bias", "a constant", "a calibration constant; the reference point", bias, (1e3, "ps")
         ),
-        _offset("orbit_radial", "the Moon further away", "the ephemeris", orbit_radial, "mm", 100.0),
-        _offset("orbit_along", "the Moon ahead in its orbit", "the ephemeris", orbit_along, "mm", 1e3),
-        _offset("orbit_across", "the Moon north of its orbit", "the ephemeris", orbit_across,
-                "mm", 1e3),
-        _offset("moon_h2", "Love number h2 of the Moon", "h2 of the lunar tide",
-                partial(love_number, h2=1.0, l2=0.0), "1e-3", 10.0),
-        _offset("moon_l2", "Shida number l2 of the Moon", "l2 of the lunar tide",
-                partial(love_number, h2=0.0, l2=1.0), "1e-3", 10.0),
-        _offset("gamma", "parameter gamma", "gamma of the gravity delay", gamma, "1e-3", 1.0),
-    ]  # fmt: skip
-    for name in stations:
-        for k, axis in enumerate(("east", "north", "up")):
-            found.append(
-                _offset(f"{_key(name)}_{axis}", f"{name} displaced {axis}",
-                        f"the coordinates of {name}",
-                        partial(station_offset, station=name, axis=k), "mm", 100.0)
-            )  # fmt: skip
-        found.append(
-            _offset(f"{_key(name)}_zenith_delay", f"zenith delay at {name}",
-                    "the zenith delay, the pressure", partial(zenith_delay_offset, station=name),
-                    "mm", 10.0)
-        )  # fmt: skip
-        if len(stations) > 1:
-            found.append(
-                _offset(f"{_key(name)}_bias", f"constant of {name} alone",
-                        f"what is different in the records of {name}",
-                        partial(bias, station=name), "ps", 1e3)
-            )  # fmt: skip
-    for name in unloaded:
-        for tide, period in TIDES_H.items():
-            for quarter, part in ((0.0, "cosine"), (0.25, "sine")):
-                found.append(
-                    _offset(f"{_key(name)}_{tide.lower()}_{part}",
-                            f"height of {name} at the period of {tide} ({part})",
-                            f"ocean loading: ours has no coefficients for {name}",
-                            partial(tide_in_height, station=name, period_h=period, quarter=quarter),
-                            "mm", 10.0)
-                )  # fmt: skip
-    for name in arrays:
-        for k, axis in enumerate(LIBRATION_AXES):
-            found.append(
-                _offset(f"{_key(name)}_{axis}", f"{name} displaced along {axis}",
-                        f"the coordinates of {name} and their axes",
-                        partial(array_offset, array=name, axis=k), "mm", 1e3)
-            )  # fmt: skip
-        if len(arrays) > 1:
-            found.append(
-                _offset(f"{_key(name)}_bias", f"constant of {name} alone",
-                        f"what is different for {name}", partial(bias, array=name), "ps", 1e3)
-            )  # fmt: skip
-    return tuple(found)
-
-
-def _key(name: str) -> str:
-    """A name fit to be part of the name of a suspect."""
-    words = "".join(ch if ch.isalnum() else " " for ch in name.lower()).split()
-    return "_".join(words)
+        offset(
+            "drift", "a drift", "a quantity that is not moved in time",
+            partial(drift, middle_year=middle_year), (100.0, "ps/yr"),
+        ),
+        offset("scale", "a scale", "the unit of length or of time", scale, (10.0, "1e-9")),
+        offset(
+            "epoch_offset", "offset of the epochs",
+            "the clock, or the tagged instant within the pulse", late_epoch, (100.0, "us"),
+        ),
+        offset(
+            "ephemeris_time", "offset of the time of the ephemeris", "TDB-TT, and its constant",
+            late_ephemeris, (1e3, "us"),
+        ),
+        offset("ut1_offset", "offset of UT1", series, late_ut1, (100.0, "us")),
+        offset(
+            "ut1_drift", "drift of UT1", series, partial(ut1_drift, middle_year=middle_year),
+            (10.0, "us/yr"),
+        ),
+        *(
+            offset(
+                f"pole_{axis}_offset", f"offset of {axis}_p", series,
+                partial(pole_offset, x=x, y=y), (10.0, "mas"), "pole",
+            )
+            for axis, x, y in (("x", 1.0, 0.0), ("y", 0.0, 1.0))
+        ),
+        *(
+            offset(
+                f"celestial_{axis}_offset", f"offset of {axis.upper()} of the celestial pole",
+                f"the frame of the ephemeris; d{axis.upper()}",
+                partial(celestial_pole_offset, x=x, y=y), (1.0, "mas"), "celestial pole",
+            )
+            for axis, x, y in (("x", 1.0, 0.0), ("y", 0.0, 1.0))
+        ),
+        *(
+            offset(
+                f"libration_{axis}", f"the Moon turned about its {axis} axis",
+                "the libration angles and their axes", partial(libration_offset, axis=k),
+                (100.0, "mas"), "libration",
+            )
+            for k, axis in enumerate("xyz")
+        ),
+        offset("orbit_radial", "the Moon further away", orbit, orbit_radial, (100.0, "mm"), "orbit"),
+        offset("orbit_along", "the Moon ahead in its orbit", orbit, orbit_along, (1e3, "mm"), "orbit"),
+        offset(
+            "orbit_across", "the Moon north of its orbit", orbit, orbit_across, (1e3, "mm"), "orbit"
+        ),
+        offset(
+            "moon_h2", "Love number h2 of the Moon", "h2 of the lunar tide",
+            partial(love_number, h2=1.0, l2=0.0), (10.0, "1e-3"),
+        ),
+        offset(
+            "moon_l2", "Shida number l2 of the Moon", "l2 of the lunar tide",
+            partial(love_number, h2=0.0, l2=1.0), (10.0, "1e-3"),
+        ),
+        offset("gamma", "parameter gamma", "gamma of the gravity delay", gamma, (1.0, "1e-3")),
+    )  # fmt: skip

@@ -32,6 +32,9 @@ class Suspect:
         Unit of the amplitude of a free offset; empty where 1 means "the choice was made".
     plausible : float
         A size of the amplitude that would not surprise: it sets what a free amplitude costs.
+    block : str
+        Free offsets that go together, as the three coordinates of a station: they are looked at
+        as one, and as one they are counted.
     choice : callable or None
         For a choice too large to add to others: the model and the query as the other program
         has them. Once found it is applied, and the search goes on from there.
@@ -45,6 +48,7 @@ class Suspect:
     readings: Mapping[float, str] = field(default_factory=dict)
     unit: str = ""
     plausible: float = 1.0
+    block: str = ""
     choice: Choice | None = None
 
     @property

@@ -34,10 +34,10 @@ C2 = SPEED_OF_LIGHT**2
 # -- delays ----------------------------------------------------------------------------------------
 
 
-def without_gravity(scene: Scene, bodies: Sequence[str]) -> Array:
-    """Without the delay in the gravity of some bodies."""
+def without_delay(scene: Scene, names: Sequence[str]) -> Array:
+    """Without some delays: those in the gravity of bodies, or terms of the user."""
     up, down = (
-        sum((leg.delays[b] for b in bodies if b in leg.delays), scene.zero)
+        sum((leg.delays[b] for b in names if b in leg.delays), scene.zero)
         for leg in (scene.legs.up, scene.legs.down)
     )
     return scene.delayed(-up, -down)
@@ -260,7 +260,7 @@ def _gravity(names: Sequence[str], name: str, of: str) -> Suspect:
         "term",
         f"gravity of {of}",
         f"the Shapiro delay of {of}: is it added, once, on both legs, with plus sign?",
-        partial(without_gravity, bodies=names),
+        partial(without_delay, names=names),
         TERM_READINGS,
     )
 
@@ -288,7 +288,7 @@ SUSPECTS: tuple[Suspect, ...] = (
         "term",
         "gravity of every body",
         "the factor (1 + gamma) GM/c^3: is it 2 GM/c^3? Is the delay added at all?",
-        partial(without_gravity, bodies=_ALL),
+        partial(without_delay, names=_ALL),
         {1.0: "left out", 0.5: "with 1 in the place of (1 + gamma) = 2", -1.0: "counted twice"},
     ),
     _part(
@@ -367,6 +367,11 @@ SUSPECTS: tuple[Suspect, ...] = (
         "the atmospheric tides of the station",
     ),
     _displacement(
+        "residual_motion",
+        "motion of the station given as a series",
+        "the series of the station's residual motion: the same, with the same signs and units?",
+    ),
+    _displacement(
         "subdaily_rotation",
         "daily and half-daily variations of pole and UT1",
         "the terms of 8.2 and 5.5 of the IERS Conventions, added after interpolation",
@@ -436,13 +441,24 @@ SUSPECTS: tuple[Suspect, ...] = (
 """Terms that ours has."""
 
 
-def absent_terms(model: Model) -> tuple[Suspect, ...]:
-    """One suspect for each term that ours leaves out on request."""
-    return tuple(
+def terms_of(model: Model) -> tuple[Suspect, ...]:
+    """A suspect for each delay term of the user, and for each term that ours leaves out."""
+    own = tuple(
+        Suspect(
+            term.name,
+            "term",
+            f"the delay term {term.name}",
+            f"whether the other program has the delay term {term.name}, and of the same size",
+            partial(without_delay, names=(term.name,)),
+            TERM_READINGS,
+        )
+        for term in model.delays
+    )
+    absent = tuple(
         Suspect(
             f"{term}_present",
             "term",
-            f"the term {term}, which ours leaves out on request",
+            f"the term {term}, which ours leaves out on request,",
             f"the other program has {term.replace('_', ' ')}: omit it there, or not here",
             partial(without_term_of_full_model, term=term),
             ADDED,
@@ -450,3 +466,4 @@ def absent_terms(model: Model) -> tuple[Suspect, ...]:
         for term in TERMS
         if term in model.omit
     )
+    return own + absent

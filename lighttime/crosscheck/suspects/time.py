@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, fields, replace
 from functools import partial
 from typing import Any
 
@@ -79,34 +79,33 @@ def tagged_at(scene: Scene, tag: Any) -> tuple[Model, Query]:
 # -- the time of the ephemeris, the Earth's rotation being right -----------------------------------
 
 
-@dataclass(frozen=True)
-class Delayed:
+@dataclass(frozen=True, eq=False, repr=False)
+class Delayed(EarthOrientation):
     """A series of Earth orientation read `seconds` too early and corrected for it.
 
     Together with epochs that are `seconds` later it turns the Earth as it should be turned,
     while Sun, Moon and planets are where they are later.
     """
 
-    series: EarthOrientation
-    seconds: float
+    seconds: float = 0.0
+
+    @classmethod
+    def of(cls, series: EarthOrientation, seconds: float) -> Delayed:
+        """The same values, to be read late."""
+        values = {field.name: getattr(series, field.name) for field in fields(series)}
+        return cls(**values | {"name": f"{series.name}, {seconds:g} s late"}, seconds=seconds)
 
     def at(self, tai1: Any, tai2: Any) -> PoleAndUT1:
         """Pole and UT1 - TAI."""
-        pole = self.series.at(tai1, np.asarray(tai2) - self.seconds / DAY)
+        pole = super().at(tai1, np.asarray(tai2) - self.seconds / DAY)
         return replace(pole, ut1_tai_s=pole.ut1_tai_s - self.seconds)
-
-    def __getattr__(self, name: str) -> Any:
-        if name.startswith("__"):
-            raise AttributeError(name)
-        return getattr(self.series, name)
 
 
 def ephemeris_later(scene: Scene, seconds: float) -> tuple[Model, Query]:
     """TT, and TDB with it, ahead by some seconds; UT1 right."""
 
     def make(model: Model) -> Model:
-        series: Any = Delayed(model.earth_orientation, seconds)
-        return replace(model, earth_orientation=series)
+        return replace(model, earth_orientation=Delayed.of(model.earth_orientation, seconds))
 
     return scene.variant(("ephemeris_later", seconds), make), scene.later(seconds)
 

@@ -103,6 +103,7 @@ class EpochFile:
         try:
             head = [name.strip() for name in next(cells, [])]
             epoch, weather = self._columns(head)
+            lines.of_row = 0
             for row in cells:
                 lines.of_row = 0
                 if len(row) != len(head):

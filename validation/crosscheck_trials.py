@@ -130,8 +130,7 @@ def _matched(found: Sequence[str], true: set[str], groups: dict[str, set[str]]) 
     if not found:
         return not true
     return any(
-        _matched(found[1:], true - {name}, groups)
-        for name in groups.get(found[0], set()) & true
+        _matched(found[1:], true - {name}, groups) for name in groups.get(found[0], set()) & true
     )
 
 
@@ -207,7 +206,7 @@ def main() -> int:
     for rows, noise in ((200, 1.0), (60, 30.0)):
         tables = [schedule(seed, rows) for seed in range(SCHEDULES)]
         suspects = tables[0].suspects
-        print(f"{rows} ranges over a year, two arrays, noise {noise:g} ps; {len(suspects)} suspects")
+        print(f"{rows} ranges of a year, two arrays, noise {noise:g} ps; {len(suspects)} suspects")
         own = np.median([lengths(t, noise) for t in tables], axis=0)
         weak = [
             s.name

@@ -339,7 +339,8 @@ def hour_angle_h(scene: Scene) -> Array:
     """Local hour angle of the ray at transmission, -12 to 12 h, west positive."""
     x, y, _ = np.einsum("ij...,i...->j...", scene.to_gcrs1, scene.legs.up.direction)
     angle = scene.station.longitude_rad - np.arctan2(y, x)
-    return (np.mod(angle / TURN + 0.5, 1.0) - 0.5) * 24.0
+    hours: Array = (np.mod(angle / TURN + 0.5, 1.0) - 0.5) * 24.0
+    return hours
 
 
 def phase_deg(scene: Scene) -> Array:

@@ -2,8 +2,8 @@
 
 | name | what it is |
 | --- | --- |
-| ``epoch``, ``epoch_utc``, ``epoch_tai``, ... | the tagged instant, as calendar text or time object |
-| ``jd_utc``, ``mjd_utc``, ``jd_tt``, ... | the same as a (modified) Julian date, any number of digits |
+| ``epoch``, ``epoch_utc``, ``epoch_tai``, ... | the tagged instant: calendar text, time object |
+| ``jd_utc``, ``mjd_utc``, ``jd_tt``, ... | the same as a (modified) Julian date, with all digits |
 | ``scale`` | the time scale of the epoch in this row |
 | ``round_trip_s`` | from transmission to reception, by the clock of the station |
 | ``half_round_trip_s`` | half of that |

@@ -138,7 +138,7 @@ def _exact(value: Any) -> tuple[Decimal | Fraction, float]:
             raise ValueError(f"{value} is too small, or has too many decimals")
         return value, 10.0 ** float(exponent)
     if isinstance(value, (int, np.integer, Fraction)):
-        return Fraction(value), 0.0
+        return Fraction(value if isinstance(value, Fraction) else int(value)), 0.0
     if isinstance(value, (float, np.floating)):
         if not np.isfinite(value):
             raise ValueError(f"{value} is not finite")

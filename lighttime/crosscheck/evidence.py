@@ -11,7 +11,9 @@ A206 (the factorisation by blocks).
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 
@@ -41,13 +43,19 @@ class Evidence:
         """Number of signatures."""
         return int(self.signatures.shape[1])
 
-    def of(self, columns: Array) -> Evidence:
+    def of(self, columns: Sequence[int]) -> Evidence:
         """For some of the signatures only."""
-        return replace(self, signatures=self.signatures[:, columns])
+        return replace(self, signatures=self.signatures[:, list(columns)])
 
     def less(self, amplitudes: Array) -> Evidence:
         """After some amplitudes of the signatures have been taken away from the differences."""
         return replace(self, differences=self.differences - self.signatures @ amplitudes)
+
+
+def triangle(matrix: Array) -> Array:
+    """The triangle of the QR factorisation, of one matrix or of a stack of them."""
+    found: Any = np.linalg.qr(matrix, mode="r")
+    return np.asarray(found)
 
 
 class Folding:
@@ -55,7 +63,7 @@ class Folding:
 
     def __init__(self, size: int) -> None:
         self.rows = 0
-        self._triangle = np.empty((0, size + 1))
+        self._triangle: Array = np.empty((0, size + 1))
 
     def add(self, signatures: Array, differences: Array, sigma: Array) -> None:
         """Take in a block.
@@ -70,9 +78,7 @@ class Folding:
         block = np.column_stack([signatures, differences]) / sigma[:, None]
         self.rows += len(block)
         stacked = np.concatenate([self._triangle, block])
-        self._triangle = (
-            np.linalg.qr(stacked, mode="r") if len(stacked) > stacked.shape[1] else stacked
-        )
+        self._triangle = triangle(stacked) if len(stacked) > stacked.shape[1] else stacked
 
     def evidence(self) -> Evidence:
         """Of all blocks so far."""

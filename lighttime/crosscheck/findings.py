@@ -74,7 +74,7 @@ class Inquiry:
     Attributes
     ----------
     suspects : tuple of Suspect
-    columns : ndarray of int
+    columns : tuple of int
         Suspects that could be seen, as indices into `suspects`.
     trial : Trial
         Its columns are those.
@@ -88,7 +88,7 @@ class Inquiry:
     """
 
     suspects: tuple[Suspect, ...]
-    columns: Array
+    columns: tuple[int, ...]
     trial: Trial
     best: Hypothesis
     chances: tuple[float, ...]
@@ -104,13 +104,6 @@ class Inquiry:
     def named(self, hypothesis: Hypothesis) -> tuple[Suspect, ...]:
         """The suspects of any of them."""
         return tuple(self.suspects[self.columns[c]] for c in hypothesis.support)
-
-    @property
-    def amplitudes(self) -> Array:
-        """Of all suspects, shape (len(suspects),)."""
-        full = np.zeros(len(self.suspects))
-        full[self.columns[list(self.best.support)]] = self.best.amplitudes
-        return full
 
 
 def inquire(
@@ -142,7 +135,7 @@ def inquire(
     evidence = folding.evidence()
     lengths = np.sqrt(np.sum(evidence.signatures**2, axis=0))
     reach = np.array([reach_of(s) for s in suspects])
-    columns = np.flatnonzero(lengths * reach > VISIBLE)
+    columns = tuple(np.flatnonzero(lengths * reach > VISIBLE).tolist())
     trial = Trial(
         evidence.of(columns),
         [tuple(suspects[i].readings) for i in columns],

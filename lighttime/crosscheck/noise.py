@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from math import inf, sqrt
 
 import numpy as np
+from numpy.typing import NDArray
 
 from lighttime.crosscheck.chance import of_any, tail
 from lighttime.vectors import Array
@@ -81,12 +82,12 @@ def rest(residual: Array, sigma: Array, orders: Mapping[str, Array]) -> Rest:
     return Rest(rms, largest, best[0], best[1], of_any(best[2], len(orders)))
 
 
-def standing_apart(residual: Array, sigma: Array) -> Array:
+def standing_apart(residual: Array, sigma: Array) -> NDArray[np.bool_]:
     """Which rows are far from all the others: a mask, at most a twentieth of the rows."""
     scaled = residual / sigma
     centred = np.abs(scaled - np.median(scaled))
     robust = max(MAD_OF_NORMAL * float(np.median(centred)), 1.0)
-    apart = centred > APART * robust
+    apart: NDArray[np.bool_] = centred > APART * robust
     if np.count_nonzero(apart) > len(residual) // 20:
         return np.zeros(len(residual), dtype=bool)
     return apart

@@ -297,8 +297,8 @@ def _weather(table: RawTable, found: Layout, note: Any) -> dict[str, Array]:
         read[name] = values
     missing = [name for name in WEATHER if name not in read]
     if missing:
-        raise InputError("columns", ", ".join(given), f"pressure, temperature and humidity together "
-                         f"({', '.join(missing)} is missing)")  # fmt: skip
+        allowed = f"pressure, temperature and humidity ({', '.join(missing)} is missing)"
+        raise InputError("columns", ", ".join(given), allowed)
     for name, limits in zip(WEATHER, (PRESSURE_HPA, TEMPERATURE_K, HUMIDITY), strict=True):
         note(name, _outside(read[name], *limits))
     return read

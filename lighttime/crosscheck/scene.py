@@ -234,9 +234,9 @@ class Scene:
         return "troposphere" in self.legs.up.delays
 
     def slant(self, sine1: Array, sine3: Array, **changed: Any) -> tuple[Array, Array]:
-        """Tropospheric delay (s) of both legs for sines of the elevation; other weather if given."""
+        """Tropospheric delay of both legs (s), from sines of the elevation, in this or other air."""
         station, query = self.station, self.query
-        weather = changed.get("weather", query.weather)
+        weather: Any = changed.get("weather", query.weather)
         wavelength = changed.get("wavelength_nm", query.wavelength_nm)
         up, down = (
             slant_delay(np.arcsin(s), station.latitude_rad, station.height_m, weather, wavelength)
@@ -305,13 +305,15 @@ class Scene:
         """The Sun or the Moon from the geocentre at an event of the station, m."""
         if body == "moon":
             return self.frame.moon_geocentric(event.seconds)[0]
-        return self.frame.distant(body, event.seconds)[0] - event.earth
+        place: Array = self.frame.distant(body, event.seconds)[0] - event.earth
+        return place
 
     def selenocentric(self, body: str) -> Array:
         """The Earth, the Sun or a planet from the centre of the Moon at t2, m."""
         if body == "earth":
             return -self.frame.moon_geocentric(self.t2.seconds)[0]
-        return self.frame.distant(body, self.t2.seconds)[0] - self.t2.moon
+        place: Array = self.frame.distant(body, self.t2.seconds)[0] - self.t2.moon
+        return place
 
     @cached_property
     def frame(self) -> EarthFrame:
@@ -332,15 +334,17 @@ def turn(vector: Array, r: Array) -> Array:
     """By how much r changes when it is turned by a rotation vector (rad), of any size."""
     angle = norm(vector)
     once = cross(vector, r)
-    return np.sinc(angle / np.pi) * once + 0.5 * np.sinc(angle / (2.0 * np.pi)) ** 2 * cross(
-        vector, once
-    )
+    changed: Array = np.sinc(angle / np.pi) * once + 0.5 * np.sinc(
+        angle / (2.0 * np.pi)
+    ) ** 2 * cross(vector, once)
+    return changed
 
 
 def rotation_vector(matrix: Array) -> Array:
     """The vector (3, n) of small rotations given as matrices (3, 3, n) that turn vectors."""
     m = matrix
-    return 0.5 * np.stack([m[2, 1] - m[1, 2], m[0, 2] - m[2, 0], m[1, 0] - m[0, 1]])
+    vector: Array = 0.5 * np.stack([m[2, 1] - m[1, 2], m[0, 2] - m[2, 0], m[1, 0] - m[0, 1]])
+    return vector
 
 
 def replace_sighting(event: Any, shift: Array, up: Array) -> Sighting:

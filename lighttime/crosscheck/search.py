@@ -102,7 +102,7 @@ def grown(trial: Trial, hypotheses: Sequence[Hypothesis], branches: int, most: i
     """Hypotheses with one more of the most promising suspects, or with a block of offsets."""
     found = set()
     for h in hypotheses:
-        more = [(column,) for column in promising(trial, h, branches)]
+        more: list[Support] = [(column,) for column in promising(trial, h, branches)]
         more += promising_blocks(trial, h, BLOCKS)
         found |= {tuple(sorted((*h.support, *columns))) for columns in more}
     return {support for support in found if len(trial.units(support)) <= most}

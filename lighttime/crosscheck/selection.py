@@ -28,7 +28,7 @@ from typing import Any
 
 import numpy as np
 
-from lighttime.crosscheck.evidence import Evidence
+from lighttime.crosscheck.evidence import Evidence, triangle
 from lighttime.vectors import Array
 
 PRIOR_EXACT = 0.8
@@ -126,12 +126,14 @@ class Trial:
     @cached_property
     def lengths(self) -> Array:
         """Lengths of the signatures in units of the stated noise."""
-        return np.sqrt(np.sum(self.evidence.signatures**2, axis=0))
+        lengths: Array = np.sqrt(np.sum(self.evidence.signatures**2, axis=0))
+        return lengths
 
     @cached_property
     def unit(self) -> Array:
         """Signatures of unit length."""
-        return self.evidence.signatures / self.lengths
+        unit: Array = self.evidence.signatures / self.lengths
+        return unit
 
     def units(self, support: Support) -> list[Support]:
         """The members of a hypothesis, those of a block together."""
@@ -227,7 +229,7 @@ class Trial:
         tau = self.plausible[columns]
         # det(1 + S^T S) from the triangle of S over 1, which keeps its digits
         stacked = np.concatenate([fit.triangle * (tau / noise2**0.5), np.eye(len(columns))])
-        diagonal = np.linalg.qr(stacked, mode="r").diagonal()
+        diagonal = triangle(stacked).diagonal()
         cost = 2.0 * float(np.sum(np.log(np.abs(diagonal))))
         seen: set[str] = set()
         for column, size in zip(columns, (fit.amplitudes / tau) ** 2, strict=True):
@@ -249,21 +251,20 @@ class Trial:
         rows = np.empty((count, len(self.evidence.differences), k + 1))
         rows[..., :k] = np.moveaxis(self.unit[:, columns], 1, 0)
         rows[..., k] = self.evidence.differences
-        triangles = np.linalg.qr(rows, mode="r")
-        return [self._fit(t, s) for t, s in zip(triangles, supports, strict=True)]
+        return [self._fit(t, s) for t, s in zip(triangle(rows), supports, strict=True)]
 
     def _fitted(self, columns: list[int], y: Array) -> Fit | None:
         """A fit to other differences."""
         rows = np.column_stack([self.unit[:, columns], y])
-        return self._fit(np.linalg.qr(rows, mode="r"), columns)
+        return self._fit(triangle(rows), columns)
 
-    def _fit(self, triangle: Array, columns: Sequence[int]) -> Fit | None:
+    def _fit(self, r_and_y: Array, columns: Sequence[int]) -> Fit | None:
         """From the triangle of unit signatures and differences; None if it is singular."""
         k = len(columns)
-        r, along = triangle[:k, :k], triangle[:k, k]
+        r, along = r_and_y[:k, :k], r_and_y[:k, k]
         if len(r) < k or (k and np.abs(r.diagonal()).min() < SAME):
             return None
-        squares = float(triangle[k, k] ** 2) if len(triangle) > k else 0.0
+        squares = float(r_and_y[k, k] ** 2) if len(r_and_y) > k else 0.0
         scales = self.lengths[list(columns)]
         inverse = np.linalg.inv(r) / scales[:, None]
         return Fit(inverse @ along, np.sqrt(np.sum(inverse**2, axis=1)), squares, r * scales)

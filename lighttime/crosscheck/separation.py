@@ -125,7 +125,8 @@ def inseparable(inquiry: Inquiry, setting: Setting) -> tuple[Inseparable, ...]:
 
 
 def _name(inquiry: Inquiry, column: int) -> str:
-    return inquiry.suspects[inquiry.columns[column]].name
+    name: str = inquiry.suspects[inquiry.columns[column]].name
+    return name
 
 
 def _explained(inquiry: Inquiry, hypothesis: Hypothesis) -> Array:
@@ -204,11 +205,12 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
         if needed > MOST_NEEDED:
             return ("no ranges would: the two do the same to all",)
         return (
-            f"no {MORE} ranges would do; the best, {what}, bring the first of these {apart:.1f} sigma "
-            f"away, and some {float(f'{needed:.1g}'):.0f} would do",
+            f"no {MORE} ranges would do; the best, {what}, bring the first of these {apart:.1f} "
+            f"sigma away, and some {float(f'{needed:.1g}'):.0f} would do",
         )
     return tuple(
-        f"{MORE} ranges {what} bring the first of these {apart:.0f} sigma away" for apart, what in enough[:3]
+        f"{MORE} ranges {what} bring the first of these {apart:.0f} sigma away"
+        for apart, what in enough[:3]
     )
 
 

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from lighttime.constants import SPEED_OF_LIGHT
+from lighttime.vectors import Array
 
 if TYPE_CHECKING:
     from lighttime.crosscheck.findings import Finding
@@ -138,7 +139,7 @@ def chance_text(chance: float) -> str:
     return "below 1e-12" if chance < 1e-12 else f"{chance:.1e}"
 
 
-def rms(values: np.ndarray) -> float:  # type: ignore[type-arg]
+def rms(values: Array) -> float:
     """Root mean square."""
     return float(np.sqrt(np.mean(values**2))) if len(values) else 0.0
 

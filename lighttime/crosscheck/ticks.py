@@ -45,7 +45,7 @@ def dates(low: float, high: float, most: int = 6) -> Ticks:
     Examples
     --------
     >>> [label for _, label in dates(58849.0, 59215.0, 4)]
-    ['2020', 'May', 'Sep', '2021']
+    ['2020', 'Apr', 'Jul', 'Oct', '2021']
     """
     days = high - low
     if days <= 0.0:
@@ -79,7 +79,7 @@ def _between(marks: Sequence[tuple[date, str]], low: float, high: float) -> Tick
 
 
 def _day(mjd: float) -> date:
-    return date.fromordinal(int(floor(mjd)) + MJD_OF_ORDINAL)
+    return date.fromordinal(floor(mjd) + MJD_OF_ORDINAL)
 
 
 def scale_of(largest_ps: float) -> tuple[float, str]:

@@ -186,8 +186,12 @@ def general_offsets(middle_year: float) -> tuple[Suspect, ...]:
             )
             for k, axis in enumerate("xyz")
         ),
-        offset("orbit_radial", "the Moon further away", orbit, orbit_radial, (100.0, "mm"), "orbit"),
-        offset("orbit_along", "the Moon ahead in its orbit", orbit, orbit_along, (1e3, "mm"), "orbit"),
+        offset(
+            "orbit_radial", "the Moon further away", orbit, orbit_radial, (100.0, "mm"), "orbit"
+        ),
+        offset(
+            "orbit_along", "the Moon ahead in its orbit", orbit, orbit_along, (1e3, "mm"), "orbit"
+        ),
         offset(
             "orbit_across", "the Moon north of its orbit", orbit, orbit_across, (1e3, "mm"), "orbit"
         ),

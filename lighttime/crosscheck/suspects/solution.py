@@ -179,7 +179,7 @@ SUSPECTS: tuple[Suspect, ...] = (
         AS_DESCRIBED,
     ),
     Suspect(
-        "bodies_at_rest", "solution", "gravitating bodies at rest where they are at the station's event",
+        "bodies_at_rest", "solution", "gravitating bodies at rest at the station's event",
         "the velocity of the Sun and the Earth in the Shapiro delay", at_rest_at_station,
         AS_DESCRIBED,
     ),
@@ -189,7 +189,7 @@ SUSPECTS: tuple[Suspect, ...] = (
         elevation_without_aberration, AS_DESCRIBED,
     ),
     Suspect(
-        "elevation_instantaneous", "solution", "elevation of instantaneous positions, for both legs",
+        "elevation_instantaneous", "solution", "one elevation, of instantaneous positions",
         "where Moon and station are taken for the troposphere's elevation", elevation_geocentric,
         AS_DESCRIBED,
     ),

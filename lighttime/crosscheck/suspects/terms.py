@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 
 from lighttime.constants import ARCSECOND, EARTH_ROTATION_RATE, J2000, JULIAN_YEAR, SPEED_OF_LIGHT
-from lighttime.crosscheck.scene import Effect, Scene
+from lighttime.crosscheck.scene import PS, Effect, Scene
 from lighttime.crosscheck.suspects.suspect import Suspect
 from lighttime.earth import rotation, subdaily, tides
 from lighttime.ephemeris.bodies import PLANETS
@@ -54,7 +54,8 @@ def without_clock(scene: Scene) -> Array:
     """The interval left in TDB seconds."""
     if scene.quantity != "round_trip":
         return scene.zero
-    return 1e12 * (scene.t3.tdb_minus_tt - scene.t1.tdb_minus_tt)
+    difference: Array = scene.t3.tdb_minus_tt - scene.t1.tdb_minus_tt
+    return PS * difference
 
 
 # -- displacements ---------------------------------------------------------------------------------

@@ -131,3 +131,13 @@ def test_outside_is_refused(moon: Records, jd: float) -> None:
 
 def test_a_record_says_what_it_is(moon: Records) -> None:
     assert repr(moon) == "<Records DE421 moon: 27408 of 4 d from JD 2414992.5, 3 x degree 12>"
+
+
+def test_constant_records_do_not_move() -> None:
+    """Series of one term: the value at all instants, no rate, no difference."""
+    still = Records(2451544.5, 4.0, np.array([[[7.0], [-2.0]]]), 1000.0)
+    place = still.locate(2451545.0, [0.0, 2.9])
+    assert still.value(place).tolist() == [[7000.0, 7000.0], [-2000.0, -2000.0]]
+    assert not still.rate(place).any()
+    assert not still.difference(2451545.0, [0.0, 2.9], 0.0, 2.6).any()
+    assert still.jet(place, 2).tolist() == [still.value(place).tolist(), *[[[0.0] * 2] * 2] * 2]

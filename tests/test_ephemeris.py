@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import pickle
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -118,3 +119,18 @@ def test_files_that_cannot_be_read(tmp_path: Path, files: tuple[Path, Path]) -> 
         Ephemeris.open(tmp_path / "text.bsp")
     with pytest.raises(FileError, match="not an ephemeris file"):
         Ephemeris.open(files[1])
+
+
+# -- an ephemeris of one's own -------------------------------------------------------------------
+
+
+def test_fields_of_ones_own_travel(de421: Ephemeris) -> None:
+    """What was not opened from a file is pickled as it is."""
+    bodies, constants = dict(de421.barycentric), {"gm_sun": de421.gm("sun")}
+    own = replace(de421, name="mine", barycentric=bodies, constants=constants, origin=())
+    same = pickle.loads(pickle.dumps(own))
+    assert same.name == "mine"
+    there = same.barycentric_body("sun", 2455200.5, 0.3)[0]
+    assert np.array_equal(there, de421.barycentric_body("sun", 2455200.5, 0.3)[0])
+    with pytest.raises(UnknownNameError, match="did you mean sun"):
+        own.barycentric_body("sunn", 2455200.5, 0.3)

@@ -15,7 +15,15 @@ from astropy_iers_data import IERS_A_FILE, IERS_B_FILE
 
 from lighttime.constants import ARCSECOND, DAY, MILLIARCSECOND, TT_MINUS_TAI
 from lighttime.earth.series import EarthOrientation
-from lighttime.earth.series_files import FINAL, PREDICTED, RAPID, UNKNOWN_DXDY_SIGMA_MAS
+from lighttime.earth.series_files import (
+    FINAL,
+    PREDICTED,
+    RAPID,
+    UNKNOWN_DXDY_SIGMA_MAS,
+    joined,
+    read_days,
+)
+from lighttime.earth.series_text import calendar
 from lighttime.earth.zonal import zonal_ut1
 from lighttime.errors import CoverageError, FileError, InputError
 
@@ -100,6 +108,25 @@ def test_a_file_of_predictions_alone(tmp_path: Path) -> None:
     assert "dX, dY    zero" in str(series)
 
 
+def test_blank_lines_around_the_days(tmp_path: Path) -> None:
+    path = tmp_path / "padded.txt"
+    path.write_text("\n".join(["", *C04_LINES[:12], "", "   ", ""]), encoding="ascii")
+    days = [line for line in C04_LINES[:12] if not line.startswith("#")]
+    assert EarthOrientation.read(path).mjd.size == len(days)
+
+
+def test_files_that_do_not_meet(tmp_path: Path) -> None:
+    """Two parts of one file with a day between them that is in neither."""
+    parts = []
+    for name, lines in (("a", FINALS_LINES[100:110]), ("b", FINALS_LINES[111:120])):
+        (tmp_path / name).write_text("\n".join(lines), encoding="ascii")
+        parts.append(read_days(tmp_path / name))
+    last = float(FINALS_LINES[109][7:15])
+    with pytest.raises(FileError, match=rf"b: the series does not go on after MJD {last:.0f}"):
+        joined(parts, tmp_path / "b")
+    assert joined([parts[0], parts[0]][:1], tmp_path / "a")["mjd"][-1] == last
+
+
 def _broken(tmp_path: Path, lines: list[str]) -> str:
     path = tmp_path / "broken.txt"
     path.write_text("\n".join(lines), encoding="ascii")
@@ -144,6 +171,10 @@ def test_other_broken_files(tmp_path: Path) -> None:
     assert _broken(tmp_path, finals) == ", line 5: expected I or P in column 58"
     finals = _with(FINALS_LINES[:10], 4, 58, " " * 10)
     assert _broken(tmp_path, finals) == ", line 5: no value of ut1_utc_s"
+    finals = _with(FINALS_LINES[:10], 4, 7, " " * 8)
+    assert _broken(tmp_path, finals) == ", line 5: no modified Julian date"
+    finals = _with(FINALS_LINES[:10], 4, 13, "25")
+    assert _broken(tmp_path, finals) == ", line 5: the values are not of 0h UTC"
     with pytest.raises(FileError, match="No such file"):
         EarthOrientation.read(tmp_path / "absent")
     with pytest.raises(FileError):
@@ -291,6 +322,7 @@ def test_fixed() -> None:
     assert many.ut1_tai_s.shape == many.dx_rad.shape == (2, 3)
     assert series.sigmas(2453750.5, [0.1, 0.2]).dx_rad.tolist() == [0.0, 0.0]
     assert series.coverage == (-np.inf, np.inf)
+    assert series.last_measured_mjd == np.inf
     assert "without zonal tides" in str(series)
     assert series.mjd.size == 0
 
@@ -342,3 +374,10 @@ def test_astropy_is_not_imported() -> None:
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "False"
+
+
+def test_dates_for_people() -> None:
+    """MJD 51544 is 2000-01-01; what no calendar has is told as a number."""
+    assert calendar(51544.9) == "2000-01-01"
+    assert calendar(np.inf) == "MJD inf"
+    assert calendar(1e7) == "MJD 10000000.0"

@@ -122,9 +122,11 @@ def _tabulate(case: Case) -> None:
     stretch = int((case.when.jd1 - 2400000.5) // ALONG_DAYS)
     if (case.late, stretch) not in _TABULATED:
         _TABULATED.add((case.late, stretch))
-        days = ALONG_DAYS * (np.arange(ALONG) + 0.5) / ALONG
-        along = lt.Epoch(2400000.5 + stretch * ALONG_DAYS, days, "tt")
-        model(case.late, "tables").round_trip(along, case.station, case.array)
+        tabulating = model(case.late, "tables")
+        last = min(tabulating.earth_orientation.coverage[1] - 1.0, (stretch + 1) * ALONG_DAYS)
+        days = np.linspace(stretch * ALONG_DAYS + 0.5, last - 0.5, ALONG)
+        along = lt.Epoch(2400000.5, days, "tt")
+        tabulating.round_trip(along, case.station, case.array)
 
 
 _TABULATED: set[tuple[int | None, int]] = set()

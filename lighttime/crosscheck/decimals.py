@@ -8,7 +8,7 @@ last digit that was given.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from decimal import Decimal, InvalidOperation
+from decimal import Context, Decimal, InvalidOperation, localcontext
 from fractions import Fraction
 from typing import Any, NamedTuple
 
@@ -17,6 +17,9 @@ from numpy.typing import NDArray
 
 from lighttime.timescales import twopart
 from lighttime.vectors import Array
+
+DIGITS = 100
+"""Decimal digits that are carried; two float64 hold 32, and what they differ by some more."""
 
 SMALLEST = 1000
 """So many decimals are taken."""
@@ -89,20 +92,23 @@ def _objects(values: Sequence[Any], factor: Fraction) -> Numbers:
     wrong: dict[int, str] = {}
     numerator, denominator = Decimal(factor.numerator), Decimal(factor.denominator)
     decimal = _is_decimal(factor)
-    for i, value in enumerate(values):
-        try:
-            exact, step = _exact(value)
-            if decimal and isinstance(exact, Decimal):
-                number: Decimal | Fraction = exact * numerator / denominator
-            else:
-                number = Fraction(exact) * factor
-            high[i] = float(number)
-            rest = number - Decimal(high[i]) if isinstance(number, Decimal) else None
-            low[i] = float(Fraction(number) - Fraction(high[i])) if rest is None else float(rest)
-            digit[i] = step * float(factor)
-        except (ValueError, OverflowError, InvalidOperation) as error:
-            high[i] = np.nan
-            wrong[i] = str(error) if isinstance(error, ValueError) else f"{value!r} is no number"
+    with localcontext(Context(prec=DIGITS)):
+        for i, value in enumerate(values):
+            try:
+                exact, step = _exact(value)
+                if decimal and isinstance(exact, Decimal):
+                    product = exact * numerator / denominator
+                    high[i] = float(product)
+                    low[i] = float(product - Decimal(high[i]))
+                else:
+                    number = Fraction(exact) * factor
+                    high[i] = float(number)
+                    low[i] = float(number - Fraction(high[i]))
+                digit[i] = step * float(factor)
+            except (ValueError, OverflowError, InvalidOperation) as error:
+                high[i] = np.nan
+                known = isinstance(error, ValueError)
+                wrong[i] = str(error) if known else f"{value!r} is no number"
     return Numbers(high, low, digit, wrong)
 
 

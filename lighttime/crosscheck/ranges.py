@@ -362,9 +362,8 @@ def _in_scale(values: Any, scale: str, found: Layout) -> tuple[Any, Any, dict[in
 def _told(error: LighttimeError, value: Any) -> str:
     if value is None or (isinstance(value, str) and not value.strip()):
         return "is empty"
-    return (
-        f"is {value!r}; allowed: {error.allowed}" if isinstance(error, InputError) else str(error)
-    )
+    shown = repr(str(value)) if isinstance(value, str) else repr(value)
+    return f"is {shown}; allowed: {error.allowed}" if isinstance(error, InputError) else str(error)
 
 
 def _to_utc(

@@ -234,7 +234,7 @@ class Scene:
         return "troposphere" in self.legs.up.delays
 
     def slant(self, sine1: Array, sine3: Array, **changed: Any) -> tuple[Array, Array]:
-        """Tropospheric delay of both legs (s), from sines of the elevation, in this or other air."""
+        """Tropospheric delay of both legs (s) from sines of the elevation, in this or other air."""
         station, query = self.station, self.query
         weather: Any = changed.get("weather", query.weather)
         wavelength = changed.get("wavelength_nm", query.wavelength_nm)

@@ -137,11 +137,10 @@ def _is_time(values: Any) -> bool:
 def _array(name: str, values: Any) -> Any:
     if hasattr(values, "to_list") and not hasattr(values, "to_numpy"):
         values = values.to_list()
-    mask = getattr(values, "mask", None)
     array = np.asarray(values)
-    if mask is not None and np.any(mask):
+    if isinstance(values, np.ma.MaskedArray) and np.any(values.mask):
         array = array.astype(object)
-        array[np.asarray(mask)] = None
+        array[np.ma.getmaskarray(values)] = None
     if array.ndim == 0:
         raise InputError(f"column {name}", values, "an array")
     if array.ndim != 1:
@@ -161,6 +160,8 @@ def _read(file: TextIO, name: str) -> RawTable:
     header = _ecsv_header(comments, name)
     delimiter = header.get("delimiter") or _delimiter(text)
     head = [cell.strip() for cell in _cells(text, delimiter)]
+    if not any(head):
+        raise FileError(name, first, f"{text[:80]!r} names no columns")
     repeated = sorted({c for c in head if head.count(c) > 1})
     if repeated:
         raise FileError(name, first, f"more than one column is called {repeated[0]!r}")
@@ -202,9 +203,13 @@ def _lines(file: TextIO, name: str, comments: list[str]) -> Iterator[tuple[int, 
 
 
 def _cells(text: str, delimiter: str) -> list[str]:
+    """The cells of a line; none if it cannot be taken apart."""
     if delimiter == " ":
-        return next(csv.reader([" ".join(text.split())], delimiter=" "), [])
-    return next(csv.reader([text], delimiter=delimiter, skipinitialspace=True), [])
+        text = " ".join(text.split())
+    try:
+        return next(csv.reader([text], delimiter=delimiter, skipinitialspace=True), [])
+    except csv.Error:
+        return []
 
 
 def _delimiter(head: str) -> str:

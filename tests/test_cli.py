@@ -285,6 +285,23 @@ def test_no_file_is_replaced_unasked(run: Run) -> None:
     assert list(files()) == ["out.csv"]
 
 
+def test_a_file_half_written_is_left_alone(run: Run) -> None:
+    """That of another run that is still writing, or was killed."""
+    for name in ("out.csv", "out.csv.part"):
+        Path(name).write_text("precious", encoding="utf-8")
+    had = files()
+    status, _, err = run(f"range --at {EVENING[0]} {WHERE} --output out.csv --overwrite")
+    assert status == 2
+    assert "out.csv.part: exists, and is left alone" in err
+    assert files() == had
+
+
+def test_what_was_left_out_is_said(run: Run) -> None:
+    _, out, _ = run(f"range --at {EVENING[0]} {WHERE} --omit clock --output out.csv")
+    assert "  left out on request: clock\n" in out
+    assert "term_clock_s" not in Path("out.csv").read_text(encoding="utf-8")
+
+
 @pytest.mark.parametrize("before", [None, b"precious"])
 def test_a_run_that_fails_leaves_no_trace(
     run: Run, monkeypatch: pytest.MonkeyPatch, before: bytes | None
@@ -393,6 +410,15 @@ def test_lunar_time_comes_with_integrated_tdb(run: Run) -> None:
     assert (status, err) == (2, "lighttime scales: error: --scale tcl needs --tdb integrated\n")
 
 
+def test_a_clock_at_a_station_of_a_file(run: Run) -> None:
+    place = "latitude_deg = 46.2\nlongitude_deg = 7.1\nheight_m = 2310\n"
+    Path("hill.toml").write_text(f'name = "Hilltop"\n{place}', encoding="utf-8")
+    _, by_file, _ = run("scales 2020-03-01T19:00:00 --at hill.toml")
+    _, by_numbers, _ = run("scales 2020-03-01T19:00:00 --at Hilltop,46.2,7.1,2310")
+    assert "clock at rest on the Earth, at Hilltop" in by_file
+    assert by_file == by_numbers
+
+
 def test_a_scale_that_is_out_of_reach_is_said(run: Run) -> None:
     _, out, _ = run("scales 1955-01-01 --scale tt --json")
     told = json.loads(out)
@@ -436,6 +462,23 @@ def test_coverage_is_that_of_the_files(run: Run) -> None:
 
 def _day(mjd: float) -> str:
     return (date(1858, 11, 17) + timedelta(days=int(mjd))).isoformat()
+
+
+def test_coverage_of_predictions_alone(run: Run) -> None:
+    """Nothing in it is measured: sigmas are told from its first day on."""
+    from astropy_iers_data import IERS_A_FILE
+
+    lines = Path(IERS_A_FILE).read_text(encoding="ascii").splitlines()
+    predicted = [line for line in lines if line[57:58] == "P" and not line[97:106].strip()]
+    Path("p.txt").write_text("\n".join(predicted), encoding="ascii")
+    status, out, _ = run("coverage --earth-orientation p.txt --json")
+    told = json.loads(out)["earth_orientation"]
+    assert status == 0
+    assert [told[f"last_{kind}_utc"] for kind in ("final", "measured", "dxdy")] == [None] * 3
+    first = told["sigmas"][0]
+    assert (first["day_utc"], first["days_after_measured"]) == (told["first_utc"], 0)
+    assert first["ut1_s"] == float(predicted[0][68:78])
+    assert run("coverage --earth-orientation p.txt")[0] == 0
 
 
 def test_coverage_for_people(run: Run) -> None:
@@ -503,6 +546,9 @@ AT = f"range --at {EVENING[0]}"
         ("scales 2006-01-15T24:00:00", "INSTANT is '2006-01-15T24:00:00'; allowed: hours 00 to 23"),
         ("scales 2060-01-01 --scale ut1", "epoch is '2060-01-01"),
         ("scales 2006-01-15 --place here", "--place is 'here'; allowed: NAME,LATITUDE_DEG"),
+        ("scales 2006-01-15 --place Hill,46N,7E,2310", "--place is 'Hill,46N,7E,2310'; allowed: "),
+        ("scales 2006-01-15 --at none.toml", "none.toml: cannot be read: No such file"),
+        (f"{AT} {PLACE} --array 1,2,z", "--array is '1,2,z'; allowed: a name, or X,Y,Z in metres"),
         ("coverage --ephemeris none.bsp", "none.bsp: cannot be read: No such file"),
     ],
 )

@@ -15,15 +15,21 @@ from lighttime.earth.local import geodetic as float_geodetic
 from lighttime.earth.series import EarthOrientation
 from lighttime.earth.station import Station
 from lighttime.earth.tides import pole_tide
-from lighttime.errors import CoverageError, HorizonError, InputError, UnknownNameError
+from lighttime.errors import (
+    ConvergenceError,
+    CoverageError,
+    HorizonError,
+    InputError,
+    UnknownNameError,
+)
 from lighttime.exact import light_time, round_trip
 from lighttime.exact.bodies import de421
 from lighttime.exact.equation import _Setup
 from lighttime.exact.gravity import Ray, delay, oblate_delay
-from lighttime.exact.numbers import Vector, context, decimal
+from lighttime.exact.numbers import Vector, context, decimal, fixed_point
 from lighttime.exact.orientation import Series
 from lighttime.exact.station import geodetic
-from lighttime.exact.times import instant, tai_minus_utc, tt_to_tai
+from lighttime.exact.times import instant, tai_minus_utc, tai_minus_utc_at_midnight, tt_to_tai
 from lighttime.exact.troposphere import boosted, mapping, zenith_delay
 from lighttime.exact.zonal import zonal_tides_ut1
 from lighttime.moon.reflector import Reflector, reflector
@@ -502,3 +508,14 @@ def test_worksheet(answer):
     assert str(answer) == f"{mpmath.nstr(answer.seconds, 40)} s"
     with pytest.raises(TypeError):
         rungs["answer_s"] = 0
+
+
+def test_a_light_time_that_is_never_found():
+    """t = g(t) has no root where g(t) is at least t + 1."""
+    with pytest.raises(ConvergenceError, match=r"still moves by .* s after 30 steps"):
+        fixed_point(lambda t: (t + 2 + mpmath.sin(t), None), mpmath.mpf(1), 1e-30)
+
+
+def test_utc_of_the_next_century():
+    with pytest.raises(CoverageError, match="UTC, modified Julian date is 88100"):
+        tai_minus_utc_at_midnight(88100)

@@ -404,3 +404,13 @@ def test_a_newer_list_is_used(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(erfa.leap_seconds, "get", lambda: wrong)
     with pytest.raises(LighttimeError, match="contradict each other"):
         leapseconds._leap_seconds()
+
+
+@pytest.mark.parametrize(
+    ("jd", "told"),
+    [(2500000.5, "2132-09-01"), (2e9, r"MJD 1997599999\.0")],
+)
+def test_days_that_utc_does_not_have(jd: float, told: str) -> None:
+    """Those of no calendar are told as a number."""
+    with pytest.raises(CoverageError, match=f"UTC date is '{told}'; allowed: 1960-01-01 to"):
+        scales.tai_minus_utc(jd, 0.0)

@@ -278,3 +278,9 @@ def test_a_station_is_a_value() -> None:
     assert again == COMPLETE
     assert hash(again) == hash(COMPLETE)
     assert HILLTOP != COMPLETE
+
+
+def test_angles_in_radians() -> None:
+    station = lt.Station.from_geodetic("Hilltop", 46.2, -7.1, 2310.0)
+    assert station.latitude_rad == pytest.approx(np.radians(46.2), abs=1e-15)
+    assert station.longitude_rad == pytest.approx(np.radians(-7.1), abs=1e-15)

@@ -133,6 +133,38 @@ def test_refusals(run: Run, line: str, message: str) -> None:
     assert not Path("a.png").exists()
 
 
+def test_what_a_bare_station_tells(run: Run) -> None:
+    """No sigma, no source: none is printed, and that nobody gave one is."""
+    Path("bare.toml").write_text("\n".join(TOML.splitlines()[:4]))
+    status, out, _ = run("bare.toml")
+    assert status == 0
+    assert "one sigma" not in out
+    assert "from a source that was not given" in " ".join(out.split())
+
+
+def test_the_station_file_is_not_drawn_over(run: Run) -> None:
+    Path("hill.png").write_text(Path("hilltop.toml").read_text())
+    status, _, err = run(f"hill.png {AT} --plot ./hill.png --overwrite")
+    assert status == 2
+    assert "--plot is 'hill.png'; allowed: another file than the one that is read" in err
+    assert Path("hill.png").read_text() == TOML
+
+
+def test_a_figure_that_cannot_be_written(run: Run, monkeypatch: pytest.MonkeyPatch) -> None:
+    pytest.importorskip("matplotlib")
+    before = Path.open
+
+    def full(path: Path, mode: str = "r", *more: object, **named: object) -> object:
+        if "b" in mode and path.suffix == ".svg":
+            raise OSError(28, "No space left on device")
+        return before(path, mode, *more, **named)  # type: ignore[call-overload]
+
+    monkeypatch.setattr(Path, "open", full)
+    status, _, err = run(f"hilltop.toml {AT} --plot a.svg")
+    assert status == 2
+    assert "a.svg: cannot be written: No space left on device" in err
+
+
 def test_figure(run: Run) -> None:
     pytest.importorskip("matplotlib")
     assert run(f"hilltop.toml {AT} --plot a.svg")[0] == 0

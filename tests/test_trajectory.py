@@ -122,3 +122,24 @@ def test_uniform_motion_is_solved_exactly(sense: Any) -> None:
     solved = solve_leg(HERE, flying, sense, 1.0)
     expected = sense * away / (SPEED_OF_LIGHT - sense * speed)
     assert float(solved.found.seconds[0]) == pytest.approx(expected, rel=1e-15)
+
+
+@pytest.mark.parametrize(
+    ("ends", "more", "message"),
+    [
+        ((HIGH, FAR), {"tag": "bounce"}, "tag is 'bounce'; allowed: one of transmit, receive"),
+        (
+            (HIGH, FAR),
+            {"weather": lt.Weather(770.0, 280.0, 0.4)},
+            "weather is .*; allowed: None where no Station is at the end of the ray",
+        ),
+        (
+            (lt.Station.from_geodetic("Hilltop", 46.2, 7.1, 2310.0),) * 2,
+            {},
+            "reflector is .*; allowed: a Reflector, or an object with bcrs",
+        ),
+    ],
+)
+def test_light_that_is_not_to_be_had(ends: Any, more: dict[str, Any], message: str) -> None:
+    with pytest.raises(lt.LighttimeError, match=message):
+        lt.one_way(EVENING, *ends, **more)

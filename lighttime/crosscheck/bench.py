@@ -25,6 +25,9 @@ from lighttime.vectors import Array, dot, norm
 BLOCK = 4096
 """Ranges solved together with all that suspects need."""
 
+KEPT = 10_000
+"""Ranges whose solution is kept from pass to pass: some 100 MB."""
+
 SUSPECTS_AS_ONE_RANGE = 10
 """So many suspects take about the time of one range."""
 
@@ -118,6 +121,7 @@ class Bench:
     wavelength_nm: float = 532.0
     variants: dict[Any, dict[Any, Model]] = field(default_factory=dict, repr=False)
     meter: Meter = field(default_factory=Meter, repr=False)
+    kept: dict[Any, Scene] = field(default_factory=dict, repr=False, init=False)
 
     # -- groups and scenes -------------------------------------------------------------------
 
@@ -188,7 +192,17 @@ class Bench:
         for group in self.groups(rows):
             for first in range(0, len(group.rows), BLOCK):
                 some = group.rows[first : first + BLOCK]
-                yield some, self.scene(group, some, applied)
+                yield some, self._kept_scene(group, some, applied)
+
+    def _kept_scene(self, group: Group, rows: Any, applied: Sequence[Suspect]) -> Scene:
+        """A block that may be asked for again: solved once, as long as there are few."""
+        key = tuple(s.name for s in applied), rows.tobytes()
+        found = self.kept.get(key)
+        if found is None:
+            found = self.scene(group, rows, applied)
+            if sum(scene.size for scene in self.kept.values()) + len(rows) <= KEPT:
+                self.kept[key] = found
+        return found
 
     def scene(self, group: Group, rows: Any, applied: Sequence[Suspect] = ()) -> Scene:
         """One block, after the choices that are applied."""

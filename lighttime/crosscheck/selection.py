@@ -37,7 +37,7 @@ PRIOR_EXACT = 0.8
 EXACT_WITHIN_SIGMA = 4.0
 """An amplitude within so many sigmas of an exact one is weighed as exact, too."""
 
-HOPELESS = 30.0
+HOPELESS = 20.0
 """Score above that of the best at which a hypothesis is not looked at any closer."""
 
 SAME = 1e-12

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from functools import cached_property
 from math import exp
 from typing import Any
 
@@ -25,6 +26,9 @@ from lighttime.vectors import Array
 
 APART_SIGMA = 5.0
 """Two explanations so far apart are told apart."""
+
+INSTANTS = 600
+"""Of the year in which new ranges are thought to be taken, day and night."""
 
 MORE = 50
 """Ranges that new data are thought to have."""
@@ -73,6 +77,16 @@ class Inseparable:
 
 
 @dataclass(frozen=True, eq=False)
+class Possible:
+    """Ranges that could be taken: in words, whether to arrays in the data, and their scene."""
+
+    words: str
+    known: bool
+    scene: Scene
+    circumstances: Circumstances
+
+
+@dataclass(frozen=True, eq=False)
 class Setting:
     """What advice is made from.
 
@@ -91,6 +105,44 @@ class Setting:
     circumstances: Circumstances
     applied: Sequence[Suspect]
     unit_ps: float
+
+    @cached_property
+    def possible(self) -> list[Possible]:
+        """A year of ranges that could be taken, around the middle of the data.
+
+        To the arrays in the data, to the others, and to one of them from a second station.
+        """
+        bench = self.bench
+        groups = bench.groups()
+        largest = max(groups, key=lambda g: len(g.rows))
+        query = replace(
+            bench.query(largest, largest.rows[:1]), when=_year(bench), weather=_usual_weather(bench)
+        )
+        known = {g.array.name: g.array for g in groups}
+        asked = [
+            (f"to {name}", name in known, replace(query, reflector=array))
+            for name, array in ({a.name: a for a in reflectors()} | known).items()
+        ]
+        second = replace(query, station=_second(largest.station))
+        asked.append(("from a second station", False, second))
+        found = (self._possible(*each) for each in asked)
+        return [each for each in found if each is not None]
+
+    def _possible(self, words: str, known: bool, query: Query) -> Possible | None:
+        """Those of the instants at which the Moon is high; None if our model cannot answer."""
+        model, quantity = self.bench.model, self.bench.ranges.quantity
+        try:
+            low = Scene(model, replace(query, weather=None), quantity)
+            high = np.arcsin(np.minimum(*low.sines)) > np.radians(LOWEST_DEG)
+            scene = Scene(model, replace(query, when=query.when[high]), quantity)
+            for suspect in self.applied:
+                assert suspect.choice is not None
+                scene = Scene(*suspect.choice(scene), quantity)
+            elevation = np.degrees(np.arcsin(scene.sines[0]))
+        except LighttimeError:
+            return None
+        seen = Circumstances(elevation, hour_angle_h(scene), phase_deg(scene))
+        return Possible(words, known, scene, seen)
 
 
 def inseparable(inquiry: Inquiry, setting: Setting) -> tuple[Inseparable, ...]:
@@ -173,7 +225,7 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
     best = inquiry.best
     columns = sorted({*best.support, *rival.support})
     suspects = [inquiry.suspects[inquiry.columns[c]] for c in columns]
-    plans = _plans(setting.bench, suspects, setting.applied)
+    plans = _plans(setting, suspects)
     sigma = setting.unit_ps * best.noise
     # what the findings predict and the rival's exact amplitudes do not; its free ones are refitted
     weights = np.zeros(len(columns))
@@ -214,49 +266,16 @@ def _advice(inquiry: Inquiry, rival: Hypothesis, setting: Setting) -> tuple[str,
     )
 
 
-def _plans(bench: Bench, suspects: Sequence[Suspect], applied: Sequence[Suspect]) -> list[Plan]:
-    """A year of possible ranges, around the middle of the data.
-
-    To the arrays in the data, to the others, and to one of them from a second station.
-    """
-    groups = bench.groups()
-    largest = max(groups, key=lambda g: len(g.rows))
-    query = replace(
-        bench.query(largest, largest.rows[:1]), when=_year(bench), weather=_usual_weather(bench)
-    )
-    known = {g.array.name: g.array for g in groups}
-    asked = [
-        (f"to {name}", name in known, replace(query, reflector=array))
-        for name, array in ({a.name: a for a in reflectors()} | known).items()
-    ]
-    asked.append(("from a second station", False, replace(query, station=_second(largest.station))))
-    plans = (_plan(bench, *each, suspects, applied) for each in asked)
-    return [plan for plan in plans if plan is not None]
-
-
-def _plan(
-    bench: Bench,
-    words: str,
-    known: bool,
-    query: Query,
-    suspects: Sequence[Suspect],
-    applied: Sequence[Suspect],
-) -> Plan | None:
-    """Those of the instants at which the Moon is high enough; None if our model cannot answer."""
-    quantity = bench.ranges.quantity
-    try:
-        low = Scene(bench.model, replace(query, weather=None), quantity)
-        high = np.arcsin(np.minimum(*low.sines)) > np.radians(LOWEST_DEG)
-        scene = Scene(bench.model, replace(query, when=query.when[high]), quantity)
-        for suspect in applied:
-            assert suspect.choice is not None
-            scene = Scene(*suspect.choice(scene), quantity)
-        table = np.stack([s.effect(scene) for s in suspects], axis=1)
-    except LighttimeError:
-        return None
-    elevation = np.degrees(np.arcsin(scene.sines[0]))
-    seen = Circumstances(elevation, hour_angle_h(scene), phase_deg(scene))
-    return Plan(words, known, scene.query.when, seen, table)
+def _plans(setting: Setting, suspects: Sequence[Suspect]) -> list[Plan]:
+    """What suspects do to the ranges that could be taken."""
+    plans = []
+    for p in setting.possible:
+        try:
+            table = np.stack([s.effect(p.scene) for s in suspects], axis=1)
+        except LighttimeError:
+            continue
+        plans.append(Plan(p.words, p.known, p.scene.query.when, p.circumstances, table))
+    return plans
 
 
 def _second(first: Station) -> Station:
@@ -272,9 +291,8 @@ def _year(bench: Bench) -> Epoch:
     first = max(series[0] + MJD_ZERO, ephemeris[0]) + 2.0
     last = min(series[1] + MJD_ZERO, ephemeris[1]) - 2.0 - JULIAN_YEAR
     start = min(max(0.5 * (jd.min() + jd.max()) - 0.5 * JULIAN_YEAR, first), max(last, first))
-    count = 900
-    steps = np.arange(count)
-    day = np.floor(steps / count * JULIAN_YEAR)
+    steps = np.arange(INSTANTS)
+    day = np.floor(steps / INSTANTS * JULIAN_YEAR)
     return Epoch(np.floor(start) + 0.5 + day, np.mod(steps * 0.6180339887498949, 1.0), "utc").to(
         "tt"
     )

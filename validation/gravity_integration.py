@@ -80,12 +80,14 @@ def integrate(
         t = start + duration * along / length
         x = early + k * along
         retarded = t
-        for _ in range(7):
+        for _ in range(7):  # Newton's method
             position, velocity = worldline(retarded)
             separation = x - position
-            before, retarded = retarded, t - separation.norm() / C
-            if abs(retarded - before) < 1e-16:
+            apart = separation.norm()
+            step = (t - retarded - apart / C) / (1 - separation @ velocity / (apart * C))
+            if abs(step) < 1e-12:
                 break
+            retarded += step
         beta = velocity / C
         g = 1 / ctx.sqrt(1 - beta @ beta)
         distance = g * (separation.norm() - separation @ beta)

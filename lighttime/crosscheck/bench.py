@@ -31,6 +31,9 @@ KEPT = 10_000
 SUSPECTS_AS_ONE_RANGE = 10
 """So many suspects take about the time of one range."""
 
+MARGIN = 100.0 / DAY
+"""Days at either end that suspects may need besides."""
+
 Progress = Callable[[int, int], None]
 
 
@@ -237,21 +240,33 @@ class Bench:
         return low
 
     def not_covered(self) -> dict[int, str]:
-        """Rows for which there is no ephemeris or no Earth orientation."""
-        when = self.ranges.when
-        jd = when.jd1 + when.jd2
+        """Rows for which there is no ephemeris, no Earth orientation, no motion of the station."""
         wrong: dict[int, str] = {}
-        series = self.model.earth_orientation
-        for name, (first, last), margin in (
-            (series.name, tuple(MJD_ZERO + d for d in series.coverage), 10.0 / DAY),
-            (self.model.ephemeris.name, self.model.ephemeris.coverage, 100.0 / DAY),
-        ):
-            for i in np.flatnonzero(~((jd > first + margin) & (jd < last - margin))):
-                wrong[int(i)] = (
-                    f"the epoch {str(when[int(i)])[:19]} is outside of {_day(first)} to "
-                    f"{_day(last)}, what {name} covers"
-                )
+        for group in self.groups():
+            when = self.ranges.when
+            jd = (when.jd1 + when.jd2)[group.rows]
+            for name, (first, last) in self._spans(group.station):
+                for row in group.rows[~((jd > first + MARGIN) & (jd < last - MARGIN))]:
+                    wrong[int(row)] = (
+                        f"the epoch {str(when[int(row)])[:19]} is outside of {_day(first)} to "
+                        f"{_day(last)}, what {name} covers"
+                    )
         return wrong
+
+    def _spans(self, station: Station) -> list[tuple[str, tuple[float, float]]]:
+        """First and last Julian date of whatever does not reach for ever."""
+        series, ephemeris = self.model.earth_orientation, self.model.ephemeris
+        first, last = series.coverage
+        spans = [
+            (series.name, (MJD_ZERO + first, MJD_ZERO + last)),
+            (ephemeris.name, ephemeris.coverage),
+        ]
+        motion = station.residual_motion
+        if motion is not None and "residual_motion" not in self.model.omit:
+            ends = [epoch.to("utc") for epoch in motion.coverage]
+            first, last = (epoch.jd1 + epoch.jd2 for epoch in ends)
+            spans.append((f"the residual motion of {station.name}", (first, last)))
+        return spans
 
     def base(self, applied: Sequence[Suspect] = ()) -> Base:
         """Our ranges, the other's minus ours, and the circumstances."""

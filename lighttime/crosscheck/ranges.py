@@ -20,7 +20,7 @@ from lighttime.timescales import SCALES, Epoch, twopart
 from lighttime.timescales.text import parse_iso
 from lighttime.vectors import Array
 
-SHOWN = 5
+SHOWN = 3
 """So many unreadable rows are named in an error."""
 
 WEATHER = ("pressure_hpa", "temperature_k", "relative_humidity")

@@ -224,11 +224,12 @@ def group_text(group: Inseparable) -> list[str]:
 
 def _rest_lines(report: Report) -> list[str]:
     rest = report.rest
-    lines = [
-        f"  remains: {rest.rms_ps:.3g} ps rms, {rest.largest_ps:.3g} at most; neighbours in "
+    said = (
+        f"remains: {rest.rms_ps:.3g} ps rms, {rest.largest_ps:.3g} at most; neighbours in "
         f"{rest.order} correlate by {rest.correlation:+.2f} (probability by chance "
         f"{chance_text(rest.chance)})"
-    ]
+    )
+    lines = wrap(said, WIDTH, initial_indent="  ", subsequent_indent="    ")
     if report.apart.any():
         rows = np.flatnonzero(report.apart)
         names = ", ".join(str(report.ranges.lines[i]) for i in rows[:MOST_NAMES])

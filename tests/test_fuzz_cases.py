@@ -173,8 +173,8 @@ CASES: dict[str, tuple[Read, bytes, str]] = {
     ),
     "an ECSV header without end": (
         read_ranges,
-        b"# %ECSV 1.0\n" + b"# - a\n" * 100_000,
-        "an ECSV header of more than 200000 characters",
+        b"# %ECSV 1.0\n" + b"# - a\n" * 20_000,
+        "an ECSV header of more than 50000 characters",
     ),
     "a number of a milliard digits": (
         read_ranges,

@@ -158,7 +158,7 @@ def _signatures(report: Report) -> str:
     drawn = []
     for axis in axes(report)[:2]:
         panels = [
-            Panel(told(f), f.amplitude * np.asarray(report.signatures[f.name]))
+            Panel(f.name, f.amplitude * np.asarray(report.signatures[f.name]))
             for f in report.findings
         ]
         alt = f"what each finding does to the ranges, against {axis.name}"

@@ -274,7 +274,7 @@ def summary(results: list[Result], seed: int) -> dict[str, Any]:
     """What the accuracy page is made from: femtoseconds case by case, and the largest of rungs."""
 
     def rounded(values: Iterable[float]) -> list[float]:
-        return [float(f"{value:.4g}") for value in values]
+        return [round(value, 3) for value in values]
 
     some = [result for result in results if result.plain is not None]
     return {

@@ -13,7 +13,7 @@ from lighttime.crosscheck.ticks import Ticks, numbers, scale_of
 from lighttime.vectors import Array
 
 WIDTH, PANEL = 560.0, 170.0
-LEFT, RIGHT, TOP, BETWEEN, BOTTOM = 58.0, 12.0, 24.0, 34.0, 40.0
+LEFT, RIGHT, TOP, BETWEEN, BOTTOM = 58.0, 12.0, 24.0, 34.0, 46.0
 CELL = 1.5
 """Points that fall into one cell of so many units are drawn once."""
 
@@ -70,7 +70,7 @@ def figure(axis: Axis, panels: Sequence[Panel], colours: Any, alt: str) -> str:
                 across = float(_placed(np.array([at]), low, high, LEFT, WIDTH - RIGHT)[0])
                 parts.append(f'<path class="grid" d="M{across:.1f} {top:.1f}V{bottom + 4:.1f}"/>')
                 if k == len(panels) - 1:
-                    parts.append(_text(across, bottom + 17.0, label, "middle"))
+                    parts.append(_text(across, bottom + 18.0, label, "middle"))
     parts.append(_text(0.5 * (LEFT + WIDTH - RIGHT), height - 4.0, axis.name, "middle"))
     return "".join(parts) + "</svg>"
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from lighttime.crosscheck.suspects import constants, frame, solution, terms, time
+from lighttime.crosscheck.suspects import constants, frame, solution, terms, tides, time
 from lighttime.crosscheck.suspects.offsets import general_offsets
 from lighttime.crosscheck.suspects.places import array_offsets, station_offsets
 from lighttime.crosscheck.suspects.suspect import FAMILIES, Suspect
@@ -17,6 +17,7 @@ __all__ = ["CHOICES", "FAMILIES", "Suspect", "all_suspects"]
 
 CHOICES: tuple[Suspect, ...] = (
     *terms.SUSPECTS,
+    *tides.SUSPECTS,
     *time.SUSPECTS,
     *frame.SUSPECTS,
     *solution.SUSPECTS,

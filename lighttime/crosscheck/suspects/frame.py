@@ -13,7 +13,8 @@ import numpy as np
 from lighttime.constants import ARCSECOND, J2000, L_B, L_G, SPEED_OF_LIGHT
 from lighttime.crosscheck.scene import Scene, rotation_vector
 from lighttime.crosscheck.suspects.suspect import Suspect
-from lighttime.crosscheck.suspects.terms import lunar_tide_of, years_since_2000
+from lighttime.crosscheck.suspects.terms import years_since_2000
+from lighttime.crosscheck.suspects.tides import lunar_tide_of
 from lighttime.crosscheck.suspects.time import AS_DESCRIBED
 from lighttime.earth import rotation, tides
 from lighttime.vectors import Array, dot, norm

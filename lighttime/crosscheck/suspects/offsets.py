@@ -10,7 +10,8 @@ from lighttime.constants import EARTH_ROTATION_RATE, MILLIARCSECOND
 from lighttime.crosscheck.scene import PS, Effect, Scene
 from lighttime.crosscheck.suspects.frame import celestial_pole_moved
 from lighttime.crosscheck.suspects.suspect import Suspect
-from lighttime.crosscheck.suspects.terms import lunar_tide_of, years_since_2000
+from lighttime.crosscheck.suspects.terms import years_since_2000
+from lighttime.crosscheck.suspects.tides import lunar_tide_of
 from lighttime.crosscheck.suspects.time import ephemeris_shifted
 from lighttime.path.delays import GRAVITY_TERMS
 from lighttime.vectors import Array, cross, norm

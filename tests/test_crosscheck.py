@@ -191,6 +191,28 @@ def test_inseparable_choices_come_with_advice() -> None:
         assert all(0.0 <= v <= 1.0 for v in group.singular_value)
 
 
+def test_another_ephemeris() -> None:
+    default = lt.Ephemeris.default()
+    constants = dict(default.constants) | {"gm_sun": default.gm("sun") * 1.001}
+    theirs = replace(default, name="DE999", constants=constants, origin=())
+    table = other(model=lt.Model(ephemeris=theirs))
+    report = lt.crosscheck(table, HILLTOP, None, ephemerides=[theirs])
+    assert found(report) == {"ephemeris_de999": 1.0}
+
+
+def test_two_stations() -> None:
+    valley = lt.Station.from_geodetic("Valley", 40.0, 12.0, 300.0)
+    moved = replace(valley, xyz_m=tuple(np.add(valley.xyz_m, 0.1 * valley.up).tolist()))
+    first, second = other(), other(station=moved)
+    table = {k: np.concatenate([first[k], second[k]]) for k in first}
+    table["station"] = np.array(["Hilltop"] * COUNT + ["valley"] * COUNT)
+    report = lt.crosscheck(table, [HILLTOP, valley], None)
+    (finding,) = report.findings
+    assert finding.name == "valley_up"
+    assert finding.fitted == pytest.approx(100.0, abs=1.5)
+    assert report.station == "Hilltop, Valley"
+
+
 # -- rungs -----------------------------------------------------------------------------------------
 
 
@@ -440,3 +462,14 @@ def test_command_on_unreadable_rows(csv_file: Path, capsys: pytest.CaptureFixtur
     command = ["crosscheck", str(csv_file), "--place", PLACE, "--quiet", "--skip-unreadable"]
     assert main(command) == 1
     assert "left out: line 42" in capsys.readouterr().out
+
+
+# -- the guide -------------------------------------------------------------------------------------
+
+
+def test_the_guide_lists_every_suspect() -> None:
+    from lighttime.crosscheck.suspects import CHOICES
+
+    guide = Path(__file__).parent.parent / "docs" / "crosscheck.md"
+    text = guide.read_text(encoding="utf-8")
+    assert [s.name for s in CHOICES if f"| `{s.name}` | {s.says} |" not in text] == []
